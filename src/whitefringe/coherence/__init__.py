@@ -1,0 +1,23 @@
+"""How far light stays correlated with itself: the degree of coherence, and the widths that are called coherence length."""
+
+from .degree import fringe_contrast, self_coherence, self_coherence_si
+from .widths import (
+    COHERENCE_DEFINITIONS,
+    DEFAULT_DEFINITION,
+    CoherenceDefinition,
+    coherence_length,
+    coherence_time,
+    packet_width,
+)
+
+__all__ = [
+    "COHERENCE_DEFINITIONS",
+    "DEFAULT_DEFINITION",
+    "CoherenceDefinition",
+    "coherence_length",
+    "coherence_time",
+    "fringe_contrast",
+    "packet_width",
+    "self_coherence",
+    "self_coherence_si",
+]

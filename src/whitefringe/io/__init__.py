@@ -1,0 +1,6 @@
+"""The only room that opens users' files: tables, settings, and safe writing."""
+
+from .settings import read_toml
+from .tables import read_table, sha256_of, write_table
+
+__all__ = ["read_table", "read_toml", "sha256_of", "write_table"]

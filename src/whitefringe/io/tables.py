@@ -1,0 +1,193 @@
+"""Tables of numbers with units: CSV, ECSV, FITS, and bare columns of numbers.
+
+The format is told by the file's name and first line; units come from the header (ECSV, FITS, or a CSV column name such as
+``wavelength [nm]``). Nothing is guessed: a column without a unit has none.
+"""
+
+from __future__ import annotations
+
+import hashlib
+import os
+import re
+import tempfile
+import warnings
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import astropy.units as u
+import numpy as np
+
+from ..errors import FileContentError
+
+if TYPE_CHECKING:
+    from astropy.table import Table
+
+FITS_ENDINGS = (".fits", ".fit", ".fts", ".fits.gz")
+_NAME_WITH_UNIT = re.compile(r"^\s*(?P<name>[^\[\(]*?)\s*[\[\(](?P<unit>[^\]\)]*)[\]\)]\s*$")
+
+
+def read_table(path: str | Path) -> Table:
+    """Read a table of numbers with the units that its header states.
+
+    Parameters
+    ----------
+    path : path
+        ``.fits`` (first binary table), ECSV (known by its first line), CSV with a header line, or columns of numbers
+        without a header, separated by blanks or commas (columns are then named ``col0``, ``col1``, ...).
+
+    Returns
+    -------
+    astropy.table.Table
+        ``meta["path"]`` and ``meta["format"]`` say what was read.
+
+    Raises
+    ------
+    FileContentError
+        The file is missing, empty, truncated, or has a row or entry that is not a number.
+    """
+    path = Path(path)
+    if not path.is_file():
+        raise FileContentError(f"{path}: no such file")
+    if path.stat().st_size == 0:
+        raise FileContentError(f"{path}: the file is empty")
+    kind, reader = _reader_for(path)
+    table = reader(path)
+    if len(table) == 0:
+        raise FileContentError(f"{path}: the table has no rows")
+    table.meta["path"], table.meta["format"] = str(path), kind
+    return table
+
+
+def _reader_for(path: Path) -> tuple[str, Any]:
+    if path.name.lower().endswith(FITS_ENDINGS):
+        return "FITS table", _read_fits
+    try:
+        first = _first_line(path)
+    except UnicodeDecodeError:
+        raise FileContentError(f"{path}: not a text file, and its name does not end in .fits") from None
+    if first.startswith("# %ECSV"):
+        return "ECSV", _read_ecsv
+    if _is_numeric(first):
+        return "numbers without a header", _read_bare
+    return "CSV", _read_csv
+
+
+def _first_line(path: Path) -> str:
+    with path.open(encoding="utf-8-sig") as lines:
+        for line in lines:
+            if line.startswith("# %ECSV") or (line.strip() and not line.lstrip().startswith("#")):
+                return line.strip()
+    raise FileContentError(f"{path}: the file holds no data, only blank or comment lines")
+
+
+def _is_numeric(line: str) -> bool:
+    fields = [field for field in re.split(r"[,\s]+", line) if field]
+    try:
+        [float(field) for field in fields]
+    except ValueError:
+        return False
+    return bool(fields)
+
+
+def _read_fits(path: Path) -> Table:
+    from astropy.io.fits.verify import VerifyError
+    from astropy.table import Table
+    from astropy.utils.exceptions import AstropyWarning
+
+    try:
+        with warnings.catch_warnings():
+            warnings.simplefilter("error", AstropyWarning)
+            return Table.read(path, format="fits")
+    except (OSError, ValueError, TypeError, IndexError, KeyError, VerifyError, AstropyWarning) as error:
+        raise FileContentError(f"{path}: not a readable FITS table, or cut short ({_line(error)})") from None
+
+
+def _read_ecsv(path: Path) -> Table:
+    from astropy.table import Table
+
+    try:
+        return _all_numbers(Table.read(path, format="ascii.ecsv"), path)
+    except FileContentError:
+        raise
+    except Exception as error:  # the ECSV reader has no error class of its own
+        raise FileContentError(f"{path}: not valid ECSV ({_line(error)})") from None
+
+
+def _read_csv(path: Path) -> Table:
+    from astropy.io import ascii as text_tables
+
+    try:
+        table = text_tables.read(path, format="csv", comment=r"\s*#", encoding="utf-8-sig", fast_reader=False)
+    except Exception as error:  # the reader raises several classes, some of them private
+        raise FileContentError(f"{path}: not valid CSV ({_line(error)})") from None
+    for column in list(table.colnames):
+        found = _NAME_WITH_UNIT.match(column)
+        if found:
+            table[column].unit = _unit(found["unit"], path, column)
+            table.rename_column(column, found["name"] or column)
+    return _all_numbers(table, path)
+
+
+def _read_bare(path: Path) -> Table:
+    from astropy.table import Table
+
+    separator = "," if "," in _first_line(path) else None
+    try:
+        rows = np.loadtxt(path, delimiter=separator, ndmin=2, encoding="utf-8-sig")
+    except ValueError as error:
+        raise FileContentError(f"{path}: {_line(error)}") from None
+    return Table(rows, names=[f"col{k}" for k in range(rows.shape[1])])
+
+
+def _unit(text: str, path: Path, column: str) -> u.UnitBase:
+    try:
+        return u.Unit(text)
+    except ValueError:
+        raise FileContentError(f"{path}: column {column!r}: {text!r} is not a unit that is known here") from None
+
+
+def _all_numbers(table: Table, path: Path) -> Table:
+    for name in table.colnames:
+        column = table[name]
+        if column.dtype.kind in "OSU":
+            bad = next((row for row, entry in enumerate(column) if not _is_numeric(str(entry))), 0)
+            raise FileContentError(f"{path}: column {name!r}, data row {bad + 1}: {column[bad]!r} is not a number")
+        if getattr(column, "mask", None) is not None and np.any(column.mask):
+            bad = int(np.flatnonzero(column.mask)[0])
+            raise FileContentError(f"{path}: column {name!r}, data row {bad + 1}: the entry is missing")
+    return table
+
+
+def _line(error: BaseException) -> str:
+    return " ".join(str(error).split())[:200]
+
+
+def write_table(table: Table, path: str | Path, *, overwrite: bool = False) -> Path:
+    """Write a table as ECSV, whole or not at all: first beside its place, then moved there.
+
+    Raises
+    ------
+    FileContentError
+        The file exists and `overwrite` is false.
+    """
+    path = Path(path)
+    if path.exists() and not overwrite:
+        raise FileContentError(f"{path}: the file exists; say overwrite=True to replace it")
+    handle, name = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.", suffix=".ecsv")
+    os.close(handle)
+    try:
+        table.write(name, format="ascii.ecsv", overwrite=True)
+        umask = os.umask(0)
+        os.umask(umask)
+        os.chmod(name, 0o666 & ~umask)
+        os.replace(name, path)
+    except BaseException:
+        Path(name).unlink(missing_ok=True)
+        raise
+    return path
+
+
+def sha256_of(path: str | Path) -> str:
+    """Return the SHA-256 checksum of a file, as hexadecimal text."""
+    with Path(path).open("rb") as stream:
+        return hashlib.file_digest(stream, "sha256").hexdigest()

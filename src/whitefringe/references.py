@@ -1,0 +1,56 @@
+"""Citation keys: every formula and definition names one of these, and reports print them."""
+
+from __future__ import annotations
+
+from typing import NamedTuple
+
+
+class Citation(NamedTuple):
+    """A published source: short form and, where there is one, a DOI or a standard's number."""
+
+    short: str
+    locator: str
+
+
+CITATIONS: dict[str, Citation] = {
+    "goodman": Citation("Goodman, Statistical Optics, 2nd ed. (Wiley 2015), sec. 5.1", "ISBN 978-1-119-00945-0"),
+    "mandel-wolf": Citation(
+        "Mandel & Wolf, Optical Coherence and Quantum Optics (Cambridge 1995), sec. 4.3",
+        "doi:10.1017/CBO9781139644105",
+    ),
+    "born-wolf": Citation(
+        "Born & Wolf, Principles of Optics, 7th ed. (Cambridge 1999), sec. 7.5.8", "doi:10.1017/CBO9781139644181"
+    ),
+    "planck": Citation("Planck's law; constants CODATA 2018 as in astropy.constants", "doi:10.1103/RevModPhys.93.025010"),
+    "tokunaga-vacca": Citation("Tokunaga & Vacca, PASP 117, 421 (2005), appendix", "doi:10.1086/429382"),
+    "bracewell": Citation(
+        "Bracewell, The Fourier Transform and Its Applications, 3rd ed. (McGraw-Hill 2000), ch. 12 and 13",
+        "ISBN 978-0-07-303938-1",
+    ),
+    "rabiner": Citation(
+        "Rabiner, Schafer & Rader, The chirp z-transform algorithm, IEEE Trans. Audio Electroacoust. 17, 86 (1969)",
+        "doi:10.1109/TAU.1969.1162034",
+    ),
+    "kay": Citation(
+        "Kay, Fundamentals of Statistical Signal Processing: Estimation Theory (Prentice Hall 1993), ex. 3.14, ch. 7",
+        "ISBN 978-0-13-345711-7",
+    ),
+    "takeda": Citation("Takeda, Ina & Kobayashi, JOSA 72, 156 (1982), eqs 5-9", "doi:10.1364/JOSA.72.000156"),
+    "nist-lines": Citation("Reader & Corliss, CRC Handbook line spectra; Sansonetti et al., Hg (1996)", "doi:10.1364/AO.35.000074"),
+    "effective-index": Citation(
+        "Macleod, Thin-Film Optical Filters, 4th ed. (CRC 2010), tilted narrow-band filters", "ISBN 978-1-4200-7302-7"
+    ),
+}
+"""Key -> citation. Edition and section numbers of the books are from memory, the DOIs of the papers too."""
+
+
+def cite(key: str) -> str:
+    """Return the short citation and locator for `key`.
+
+    Examples
+    --------
+    >>> cite("takeda")
+    'Takeda, Ina & Kobayashi, JOSA 72, 156 (1982), eqs 5-9; doi:10.1364/JOSA.72.000156'
+    """
+    source = CITATIONS[key]
+    return f"{source.short}; {source.locator}"

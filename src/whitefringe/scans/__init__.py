@@ -1,0 +1,28 @@
+"""Recorded delay scans to numbers: reading, conditioning, reduction, spectrum and verdict."""
+
+from .conditioning import EvenScan, even_scan
+from .layout import ScanLayout
+from .reduction import ScanCurves, ScanResult, compared, reduce_scan
+from .scan import Scan, read_scan
+from .spectrum import ScanLine, ScanSpectrum, spectrum_from_scan
+from .verdict import Comparison, Outcome, Tolerances, judged, overall
+
+__all__ = [
+    "Comparison",
+    "EvenScan",
+    "Outcome",
+    "Scan",
+    "ScanCurves",
+    "ScanLayout",
+    "ScanLine",
+    "ScanResult",
+    "ScanSpectrum",
+    "Tolerances",
+    "compared",
+    "even_scan",
+    "judged",
+    "overall",
+    "read_scan",
+    "reduce_scan",
+    "spectrum_from_scan",
+]

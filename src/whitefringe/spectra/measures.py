@@ -1,0 +1,105 @@
+"""Numbers that describe a spectrum. Each says how it is defined; all are weighted as the spectrum is (photons by default)."""
+
+from __future__ import annotations
+
+import astropy.units as u
+import numpy as np
+
+from ..errors import UndefinedWidthError
+from ..results import Measured
+from ..units import SPEED_OF_LIGHT
+from .spectrum import Spectrum
+
+
+def mean_frequency_si(spectrum: Spectrum) -> float:
+    """Return int nu S dnu / int S dnu [Hz]."""
+    step = spectrum.step_si
+    # the slope inside a cell moves its centre of gravity by slope * step / 12
+    first = float(np.sum(spectrum.density * spectrum.frequency_si) + np.sum(spectrum.slopes) * step / 12) * step
+    lines = float(sum(line.strength * line.frequency_si for line in spectrum.lines))
+    return ((first if spectrum.density.size else 0.0) + lines) / spectrum.total_rate
+
+
+def mean_frequency(spectrum: Spectrum) -> Measured:
+    """Mean frequency: int nu S(nu) dnu / int S(nu) dnu, lines included."""
+    return Measured(
+        value=mean_frequency_si(spectrum) * u.Hz, definition=f"mean frequency, {spectrum.weight}-weighted", method="sum over cells"
+    )
+
+
+def mean_wavelength(spectrum: Spectrum) -> Measured:
+    """Vacuum wavelength of the mean frequency, c / mean frequency: the fringe period at zero path difference."""
+    value = (SPEED_OF_LIGHT / mean_frequency_si(spectrum) * u.m).to(u.um)
+    return Measured(value=value, definition=f"c / mean frequency, {spectrum.weight}-weighted", method="sum over cells")
+
+
+def half_maximum_edges_si(spectrum: Spectrum) -> tuple[float, float]:
+    """Outermost frequencies [Hz] at which the density is half its maximum.
+
+    Raises
+    ------
+    UndefinedWidthError
+        Light of several lines, of a monochromatic line, or of lines on a continuum.
+    """
+    if spectrum.lines:
+        return _edges_of_a_line(spectrum)
+    density, step = spectrum.density, spectrum.step_si
+    half = 0.5 * float(np.max(density))
+    above = np.flatnonzero(density >= half)
+    first, last = int(above[0]), int(above[-1])
+    low, high = spectrum.start_si, spectrum.start_si + step * density.size
+    if first > 0:
+        before, after = density[first - 1], density[first]
+        low = float(spectrum.frequency_si[first] - step * (after - half) / (after - before))
+    if last < density.size - 1:
+        before, after = density[last], density[last + 1]
+        high = float(spectrum.frequency_si[last] + step * (before - half) / (before - after))
+    return low, high
+
+
+def _edges_of_a_line(spectrum: Spectrum) -> tuple[float, float]:
+    if spectrum.density.size or len(spectrum.lines) > 1:
+        raise UndefinedWidthError(
+            "a full width at half maximum has no meaning for several lines, or lines on a continuum; ask for the coherence length "
+            'with definition="power" or "half" instead'
+        )
+    line = spectrum.lines[0]
+    if line.fwhm_si == 0:
+        raise UndefinedWidthError("a monochromatic line has no width, and its coherence length has no end")
+    return line.frequency_si - line.fwhm_si / 2, line.frequency_si + line.fwhm_si / 2
+
+
+def full_width_half_maximum(spectrum: Spectrum, axis: str = "frequency") -> Measured:
+    """Full width at half maximum, between the outermost half-maximum points.
+
+    Parameters
+    ----------
+    spectrum : Spectrum
+    axis : str
+        ``"frequency"``, or ``"wavelength"``: the distance of the same two points in vacuum wavelength. The density itself stays
+        one per hertz.
+    """
+    low, high = half_maximum_edges_si(spectrum)
+    if axis == "wavelength":
+        value = (SPEED_OF_LIGHT / low - SPEED_OF_LIGHT / high) * u.m
+        return Measured(value=value.to(u.nm), definition="full width at half maximum, in wavelength", method="linear crossing")
+    if axis != "frequency":
+        raise ValueError(f'axis must be "frequency" or "wavelength"; got {axis!r}')
+    return Measured(value=((high - low) * u.Hz).to(u.THz), definition="full width at half maximum", method="linear crossing")
+
+
+def equivalent_width(spectrum: Spectrum) -> Measured:
+    """Equivalent width: int S dnu / max S, of the continuum (Tokunaga & Vacca 2005, appendix, there per wavelength)."""
+    if not spectrum.density.size:
+        raise UndefinedWidthError("light of lines only has no equivalent width: there is no continuum")
+    value = spectrum.continuum_rate / float(np.max(spectrum.density)) * u.Hz
+    return Measured(
+        value=value.to(u.THz), definition="equivalent width: integral over maximum", method="sum over cells", citation="tokunaga-vacca"
+    )
+
+
+def resolving_power(spectrum: Spectrum) -> Measured:
+    """Resolving power: mean frequency over full width at half maximum."""
+    low, high = half_maximum_edges_si(spectrum)
+    value = mean_frequency_si(spectrum) / (high - low) * u.dimensionless_unscaled
+    return Measured(value=value, definition="resolving power: mean frequency / full width at half maximum", method="ratio")
