@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 from functools import cached_property
-from typing import Any, Protocol, runtime_checkable
+from typing import Any, ClassVar, Protocol, runtime_checkable
 
 import astropy.units as u
 import numpy as np
@@ -91,6 +91,7 @@ class TopHat(_Shape):
     3.3310273e+13
     """
 
+    shape: ClassVar[str] = "top-hat"
     centre: u.Quantity = parameter("centre", u.um, low=0.4, high=2.5, step=0.005, start=1.65)
     width: u.Quantity = parameter("width", u.nm, low=5.0, high=400.0, step=5.0, start=300.0)
 
@@ -123,6 +124,7 @@ class Gaussian(_Shape):
     side (2e-15 of the peak), or to where the wavelength would reach a tenth of the centre's.
     """
 
+    shape: ClassVar[str] = "gaussian"
     centre: u.Quantity = parameter("centre", u.um, low=0.4, high=2.5, step=0.005, start=1.65)
     fwhm: u.Quantity = parameter("full width at half maximum", u.nm, low=5.0, high=300.0, step=5.0, start=250.0)
 
@@ -177,6 +179,7 @@ class Tabulated(_Shape):
         The curve does not fall to near zero at its ends.
     """
 
+    shape: ClassVar[str] = "table"
     wavelength: u.Quantity
     transmission_values: Any
     repair: tuple[str, ...] = ()
@@ -225,6 +228,7 @@ class Tilted(_Shape):
         Effective index of the coating, above 1; from the maker, or fitted. Common practice: 1.4 to 2.2.
     """
 
+    shape: ClassVar[str] = "tilted"
     filter: Filter
     angle: u.Quantity
     effective_index: float = 1.8

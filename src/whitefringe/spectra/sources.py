@@ -9,7 +9,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 from functools import cached_property
-from typing import Any, Protocol, runtime_checkable
+from typing import Any, ClassVar, Protocol, runtime_checkable
 
 import astropy.units as u
 import numpy as np
@@ -58,6 +58,7 @@ class Flat:
         ``"hertz"`` (default), or ``"wavelength"``: rate per hertz proportional to 1/nu^2, since d lambda = c dnu / nu^2.
     """
 
+    shape: ClassVar[str] = "flat"
     per: str = "hertz"
 
     def __post_init__(self) -> None:
@@ -88,6 +89,7 @@ class Thermal:
     temperature : Quantity [K]
     """
 
+    shape: ClassVar[str] = "thermal"
     temperature: u.Quantity = parameter("temperature", u.K, low=500.0, high=6500.0, step=50.0, start=2900.0)
 
     def __post_init__(self) -> None:
@@ -123,6 +125,7 @@ class Diode:
         Full width at half maximum; Gaussian on the axis of its unit.
     """
 
+    shape: ClassVar[str] = "diode"
     centre: u.Quantity = parameter("centre", u.um, low=0.4, high=2.5, step=0.005, start=1.65)
     fwhm: u.Quantity = parameter("full width at half maximum", u.nm, low=5.0, high=300.0, step=5.0, start=60.0)
 
@@ -155,6 +158,7 @@ class Lines:
     lines : iterable of Line
     """
 
+    shape: ClassVar[str] = "lines"
     lines: tuple[Line, ...] = field()
 
     def __init__(self, lines: Iterable[Line]) -> None:

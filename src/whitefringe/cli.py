@@ -1,0 +1,186 @@
+"""The command line: ``whitefringe measure``, ``predict`` and ``demo``.
+
+Exit status: 0 within tolerance, 1 outside, 2 bad usage or input, 3 undecided or not measured.
+"""
+
+from __future__ import annotations
+
+import argparse
+import json
+import warnings
+from collections.abc import Sequence
+from typing import Any
+
+from rich.console import Console
+from rich.table import Table
+
+from . import __version__
+from .errors import ScanError, ScanLayoutError, UndefinedWidthError, WhitefringeError, WhitefringeWarning
+from .results import Measured
+
+EXIT = {"inside": 0, "outside": 1, "undecided": 3, "not measured": 3}
+BAD_INPUT = 2
+NOT_MEASURED = 3
+STYLES = {"inside": "green", "outside": "bold red", "undecided": "yellow", "not measured": "yellow"}
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run a command and return its exit status."""
+    options = _parser().parse_args(arguments)
+    err = Console(stderr=True)
+    with warnings.catch_warnings(record=True) as caught:
+        warnings.simplefilter("always", WhitefringeWarning)
+        try:
+            status = int(options.run(options))
+        except WhitefringeError as error:
+            unmeasured = isinstance(error, (ScanError, UndefinedWidthError)) and not isinstance(error, ScanLayoutError)
+            status = _refuse(options, error, NOT_MEASURED if unmeasured else BAD_INPUT, err)
+        except OSError as error:
+            status = _refuse(options, error, BAD_INPUT, err)
+    for warning in caught:
+        err.print(f"note: {warning.message}", style="yellow", markup=False, highlight=False, soft_wrap=True)
+    return status
+
+
+def _refuse(options: argparse.Namespace, error: Exception, status: int, err: Console) -> int:
+    if getattr(options, "json", False):
+        verdict = "not measured" if status == NOT_MEASURED else "bad input"
+        print(json.dumps({"verdict": verdict, "error": type(error).__name__, "reason": str(error)}, indent=2))
+    word = "not measured" if status == NOT_MEASURED else "error"
+    err.print(f"{word}: {error}", style="red", markup=False, highlight=False, soft_wrap=True)
+    return status
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(
+        prog="whitefringe",
+        description="Predict fringe packets and read recorded delay scans.",
+        epilog="Exit status: 0 within tolerance, 1 outside, 2 bad usage or input, 3 undecided or not measured.",
+    )
+    parser.add_argument("--version", action="version", version=f"whitefringe {__version__}")
+    commands = parser.add_subparsers(required=True, metavar="COMMAND")
+    measure = commands.add_parser("measure", help="reduce a recorded scan and compare it with the prediction")
+    measure.add_argument("scan", metavar="SCAN", help="recorded scan: ECSV, CSV, FITS table or columns of numbers")
+    measure.set_defaults(run=_measure)
+    predict = commands.add_parser("predict", help="print the numbers of the packet that the setup predicts")
+    predict.set_defaults(run=_predict)
+    for command in (measure, predict):
+        command.add_argument("--setup", metavar="FILE", required=True, help="setup file (TOML)")
+        command.add_argument("--json", action="store_true", help="print JSON for machines")
+    demo = commands.add_parser("demo", help="write the invented Larkmoor bench: setup, filter curve and scans")
+    demo.add_argument("folder", metavar="FOLDER", help="an existing folder")
+    demo.add_argument("--overwrite", action="store_true", help="replace files that exist")
+    demo.set_defaults(run=_demo)
+    return parser
+
+
+def _measure(options: argparse.Namespace) -> int:
+    from .scans import read_scan, reduce_scan
+    from .setup import Setup
+
+    setup = Setup.read(options.setup)
+    scan = read_scan(options.scan, setup.layout)
+    result = reduce_scan(
+        scan,
+        setup.light,
+        definition=setup.definition,
+        tolerances=setup.tolerances,
+        expected_contrast=setup.expected_contrast,
+    )
+    verdict = str(result.verdict)
+    if options.json:
+        print(json.dumps(_measure_json(scan, setup, result), indent=2))
+    else:
+        console = Console()
+        console.print(_results_table(f"{scan.name} with {setup.name}", result.rows))
+        console.print(_comparison_table(result.comparisons))
+        for note in result.notes:
+            console.print(f"note: {note}", markup=False, highlight=False, soft_wrap=True)
+        console.print(f"verdict: [{STYLES[verdict]}]{verdict}[/]", highlight=False)
+    return EXIT[verdict]
+
+
+def _predict(options: argparse.Namespace) -> int:
+    from .fringes import predict_packet
+    from .setup import Setup
+
+    setup = Setup.read(options.setup)
+    prediction = predict_packet(setup.light, setup.definition)
+    if options.json:
+        numbers = {name: _json_of(value) for name, value in prediction.rows}
+        print(json.dumps({"setup": setup.name, "prediction": numbers}, indent=2))
+    else:
+        Console().print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
+    return 0
+
+
+def _demo(options: argparse.Namespace) -> int:
+    from .demo import write_bench
+
+    for path in write_bench(options.folder, overwrite=options.overwrite):
+        print(path)
+    return 0
+
+
+def _results_table(title: str, rows: Sequence[tuple[str, Measured | str]]) -> Table:
+    table = Table(title=title, title_justify="left")
+    table.add_column("quantity")
+    table.add_column("value", justify="right", no_wrap=True)
+    table.add_column("definition")
+    for name, value in rows:
+        if isinstance(value, Measured):
+            table.add_row(name, value.text, value.definition)
+        else:
+            table.add_row(name, "none", value)
+    return table
+
+
+def _comparison_table(comparisons: Sequence[Any]) -> Table:
+    table = Table(title="measured over predicted", title_justify="left")
+    for column in ("quantity", "predicted", "ratio", "tolerance", "outcome"):
+        table.add_column(column, no_wrap=column != "outcome")
+    for item in comparisons:
+        limits = "not set" if item.tolerance is None else f"{item.tolerance[0]:g} to {item.tolerance[1]:g}"
+        ratio = item.ratio.text if item.ratio is not None else "none"
+        outcome = "not judged" if item.outcome is None else str(item.outcome)
+        outcome = f"[{STYLES.get(outcome, 'dim')}]{outcome}[/]" + (f": {item.reason}" if item.reason else "")
+        table.add_row(item.name, item.predicted.text, ratio, limits, outcome)
+    return table
+
+
+def _measure_json(scan: Any, setup: Any, result: Any) -> dict[str, Any]:
+    comparisons = [
+        {
+            "name": item.name,
+            "predicted": _json_of(item.predicted),
+            "ratio": None if item.ratio is None else _json_of(item.ratio),
+            "tolerance": item.tolerance,
+            "outcome": None if item.outcome is None else str(item.outcome),
+            "reason": item.reason,
+        }
+        for item in result.comparisons
+    ]
+    return {
+        "scan": dict(scan.provenance),
+        "setup": setup.origin,
+        "whitefringe": __version__,
+        "results": {name: _json_of(value) for name, value in result.rows},
+        "signal_to_noise": result.signal_to_noise,
+        "samples_per_fringe": result.samples_per_fringe,
+        "comparisons": comparisons,
+        "notes": list(result.notes),
+        "verdict": str(result.verdict),
+    }
+
+
+def _json_of(value: Measured | str) -> dict[str, Any]:
+    if isinstance(value, str):
+        return {"value": None, "reason": value}
+    return {
+        "value": float(value.value.value),
+        "uncertainty": None if value.uncertainty is None else float(value.uncertainty.value),
+        "unit": value.unit.to_string(),
+        "definition": value.definition,
+        "method": value.method,
+    }
+
