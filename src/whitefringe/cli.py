@@ -183,4 +183,3 @@ def _json_of(value: Measured | str) -> dict[str, Any]:
         "definition": value.definition,
         "method": value.method,
     }
-

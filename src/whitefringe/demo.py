@@ -24,7 +24,7 @@ TILT = 16 * u.deg
 STAGE_HALF_RANGE_UM = 30.0
 STAGE_STEP_UM = 0.1
 
-SETUP_TEXT = '''# Larkmoor lamp bench (invented): what `whitefringe measure` and the notebook read.
+SETUP_TEXT = """# Larkmoor lamp bench (invented): what `whitefringe measure` and the notebook read.
 name = "Larkmoor lamp bench"
 
 [source]
@@ -50,7 +50,7 @@ coherence_length = "bandwidth"
 contrast = [0.95, 1.05]
 wavelength = [0.995, 1.005]
 packet_width = [0.95, 1.05]
-'''
+"""
 
 
 def bench_filter() -> Tabulated:

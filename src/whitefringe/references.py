@@ -18,9 +18,7 @@ CITATIONS: dict[str, Citation] = {
         "Mandel & Wolf, Optical Coherence and Quantum Optics (Cambridge 1995), sec. 4.3",
         "doi:10.1017/CBO9781139644105",
     ),
-    "born-wolf": Citation(
-        "Born & Wolf, Principles of Optics, 7th ed. (Cambridge 1999), sec. 7.5.8", "doi:10.1017/CBO9781139644181"
-    ),
+    "born-wolf": Citation("Born & Wolf, Principles of Optics, 7th ed. (Cambridge 1999), sec. 7.5.8", "doi:10.1017/CBO9781139644181"),
     "planck": Citation("Planck's law; constants CODATA 2018 as in astropy.constants", "doi:10.1103/RevModPhys.93.025010"),
     "tokunaga-vacca": Citation("Tokunaga & Vacca, PASP 117, 421 (2005), appendix", "doi:10.1086/429382"),
     "bracewell": Citation(
@@ -36,7 +34,6 @@ CITATIONS: dict[str, Citation] = {
         "ISBN 978-0-13-345711-7",
     ),
     "takeda": Citation("Takeda, Ina & Kobayashi, JOSA 72, 156 (1982), eqs 5-9", "doi:10.1364/JOSA.72.000156"),
-    "nist-lines": Citation("Reader & Corliss, CRC Handbook line spectra; Sansonetti et al., Hg (1996)", "doi:10.1364/AO.35.000074"),
     "effective-index": Citation(
         "Macleod, Thin-Film Optical Filters, 4th ed. (CRC 2010), tilted narrow-band filters", "ISBN 978-1-4200-7302-7"
     ),

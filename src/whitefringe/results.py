@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -68,6 +69,21 @@ class Measured:
 
     def __str__(self) -> str:
         return f"{self.text} ({self.definition})" if self.definition else self.text
+
+
+def rows_text(rows: Sequence[tuple[str, Measured | str]]) -> str:
+    """Lay out named numbers as lines of text, with fixed digits: stable for notebooks under test.
+
+    Examples
+    --------
+    >>> import astropy.units as u
+    >>> print(rows_text([("width", Measured(value=9 * u.um, definition="at half")), ("null", "there is none")]))
+    width  9 um  at half
+    null   none  there is none
+    """
+    cells = [(name, v.text, v.definition) if isinstance(v, Measured) else (name, "none", v) for name, v in rows]
+    first, second = (max(len(cell[k]) for cell in cells) for k in (0, 1))
+    return "\n".join(f"{name:<{first}}  {value:<{second}}  {words}".rstrip() for name, value, words in cells)
 
 
 def number_text(value: float, sigma: float | None, unit: u.UnitBase | None = None) -> str:

@@ -144,6 +144,6 @@ def positive_si(value: Any, unit: u.UnitBase, name: str, example: str | None = N
 
 def read_only(values: Any, dtype: type = float) -> NDArray[Any]:
     """Return a copy of `values` that cannot be written to."""
-    array = np.array(values, dtype=dtype)
+    array: NDArray[Any] = np.array(values, dtype=dtype)
     array.setflags(write=False)
     return array

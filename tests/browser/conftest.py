@@ -66,17 +66,13 @@ def _serve(start: Callable[[Server], None], folder: Path, servers: dict[int, Ser
 
 
 @pytest.fixture(scope="session")
-def lab_server(
-    browser_path: str, servers: dict[int, Server], tmp_path_factory: pytest.TempPathFactory
-) -> Iterator[Server]:
+def lab_server(browser_path: str, servers: dict[int, Server], tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
     """JupyterLab over a copy of the notebooks; it asks for the browser so as to skip early."""
     yield from _serve(start_lab, tmp_path_factory.mktemp("lab"), servers)
 
 
 @pytest.fixture(scope="session")
-def voila_server(
-    browser_path: str, servers: dict[int, Server], tmp_path_factory: pytest.TempPathFactory
-) -> Iterator[Server]:
+def voila_server(browser_path: str, servers: dict[int, Server], tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
     """Voila over a copy of the notebooks."""
     yield from _serve(start_voila, tmp_path_factory.mktemp("voila"), servers)
 

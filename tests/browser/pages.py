@@ -13,7 +13,7 @@ SLOW = 60_000.0
 QUICK = 20_000.0
 """Milliseconds for the steps that wait for one answer of the kernel."""
 
-_CURVES = ".wf-packet-plot path.line"
+_CURVES = ".wf-panel .wf-packet-plot path.line"
 _READ_CURVES = f"() => [...document.querySelectorAll('{_CURVES}')].map(p => p.getAttribute('d') || '')"
 _CURVES_AT_REST = f"""() => new Promise(answer => {{
     const read = {_READ_CURVES};
@@ -72,8 +72,7 @@ def wait_for_new_curve(page: Page, before: list[str], *, longest: bool = False) 
     lengths = [len(curve) for curve in before]
     which = [lengths.index(max(lengths))] if longest else list(range(len(before)))
     page.wait_for_function(
-        f"([before, which]) => {{ const now = ({_READ_CURVES})(); "
-        "return which.some(i => now[i] && now[i] !== before[i]); }",
+        f"([before, which]) => {{ const now = ({_READ_CURVES})(); return which.some(i => now[i] && now[i] !== before[i]); }}",
         arg=[before, which],
         timeout=QUICK,
     )

@@ -28,9 +28,7 @@ def cells_with_code(notebook: Path) -> int:
 
 
 @pytest.mark.browser
-def test_three_steps_of_the_delay_reach_the_plot_and_the_read_out(
-    lab_server: Server, page: Page, artefacts: Path
-) -> None:
+def test_three_steps_of_the_delay_reach_the_plot_and_the_read_out(lab_server: Server, page: Page, artefacts: Path) -> None:
     page.goto(lab_server.address(f"doc/tree/{NOTEBOOK}", reset=""))
     run_all_cells(page, cells_with_code(lab_server.root / NOTEBOOK))
     panel = wait_for_panel(page)

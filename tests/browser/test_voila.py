@@ -19,16 +19,17 @@ from .server_process import Server
 
 
 @pytest.mark.browser
-def test_a_new_filter_reaches_the_plot_and_the_read_out(
-    voila_server: Server, page: Page, artefacts: Path
-) -> None:
+def test_a_new_filter_reaches_the_plot_and_the_read_out(voila_server: Server, page: Page, artefacts: Path) -> None:
     page.goto(voila_server.address(f"voila/render/{NOTEBOOK}", theme="light"), timeout=SLOW)
     panel = wait_for_panel(page)
-    readout = panel.locator(".wf-readout").first
+    readout, control = panel.locator(".wf-readout").first, panel.locator(".wf-filter-control")
+    table = readout.inner_text()
+    control.locator("select").select_option("gaussian")
+    expect(readout).not_to_have_text(table, timeout=QUICK)
     curves = curves_at_rest(page)
     text = readout.inner_text()
 
-    press_right(panel.locator(".wf-filter-control .noUi-handle").first, times=3)
+    press_right(control.locator(".noUi-handle").first, times=3)
 
     expect(readout).not_to_have_text(text, timeout=QUICK)
     wait_for_new_curve(page, curves, longest=True)

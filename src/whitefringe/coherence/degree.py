@@ -93,12 +93,12 @@ def self_coherence_si(spectrum: Spectrum, tau: Any) -> ComplexArray:
     """Twin of `self_coherence`: delays in seconds, as the spectrum is weighted."""
     delays = np.asarray(tau, dtype=float)
     flat = delays.ravel()
-    total = np.zeros(flat.shape, dtype=complex)
+    total: ComplexArray = np.zeros(flat.shape, dtype=complex)
     if spectrum.density.size and flat.size:
         total += _continuum(spectrum, flat)
     for line in spectrum.lines:
         total += line.strength * line.coherence_si(flat)
-    return (total / spectrum.total_rate).reshape(delays.shape)
+    return np.asarray(total / spectrum.total_rate).reshape(delays.shape)
 
 
 def _continuum(spectrum: Spectrum, tau: FloatArray) -> ComplexArray:
@@ -160,13 +160,13 @@ def _block_sum(values: FloatArray, phase: FloatArray) -> ComplexArray:
     """Direct sum, with k = a * width + b so that only 2 sqrt(n) exponentials per delay are needed."""
     width = int(np.ceil(np.sqrt(values.size)))
     rows = -(-values.size // width)
-    table = np.zeros(rows * width)
-    table[: values.size] = values
-    table = table.reshape(rows, width)
+    table = np.pad(values, (0, rows * width - values.size)).reshape(rows, width)
     result = np.empty(phase.size, dtype=complex)
     for begin in range(0, phase.size, _BLOCK):
         block = phase[begin : begin + _BLOCK]
         fine = np.exp(-2j * np.pi * np.arange(width)[:, None] * block)
         coarse = np.exp(-2j * np.pi * width * np.arange(rows)[:, None] * block)
-        result[begin : begin + _BLOCK] = np.einsum("at,at->t", coarse, table @ fine)
+        # for a few delays the threads of a matrix product cost more than they save
+        inner = table @ fine if block.size > _FEW else np.einsum("ab,bt->at", table, fine)
+        result[begin : begin + _BLOCK] = np.einsum("at,at->t", coarse, inner)
     return result

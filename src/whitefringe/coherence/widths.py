@@ -11,7 +11,7 @@ from dataclasses import dataclass, replace
 
 import astropy.units as u
 import numpy as np
-from scipy.optimize import brentq, minimize_scalar
+from scipy.optimize import minimize_scalar
 from scipy.special import voigt_profile
 
 from ..errors import InputError, UndefinedWidthError
@@ -106,8 +106,20 @@ def _first_below(spectrum: Spectrum, level: float) -> float:
             'ask for definition="power"'
         )
     last = int(below[0])
-    low, high = delays[last - 1], delays[last]
-    return float(brentq(lambda delay: _contrast(spectrum, delay) - level, low, high, xtol=1e-13 * high, rtol=1e-12))
+    return _crossing(spectrum, level, float(delays[last - 1]), float(delays[last]))
+
+
+def _crossing(spectrum: Spectrum, level: float, low: float, high: float) -> float:
+    """Delay in the bracket at which |gamma| falls through `level`: three rounds of 33 equally spaced delays, then a straight line."""
+    for _ in range(3):
+        delays = np.linspace(low, high, 33)
+        contrast = np.abs(self_coherence_si(spectrum, delays))
+        first = int(np.flatnonzero(contrast[1:] <= level)[0]) if np.any(contrast[1:] <= level) else 31
+        low, high = float(delays[first]), float(delays[first + 1])
+        before, after = float(contrast[first]), float(contrast[first + 1])
+    if before == after:
+        return low
+    return low + (high - low) * min(max((before - level) / (before - after), 0.0), 1.0)
 
 
 def _half(spectrum: Spectrum) -> float:
@@ -132,9 +144,7 @@ def _first_null(spectrum: Spectrum) -> float:
         )
         if found.fun < NULL_DEPTH:
             return float(found.x)
-    raise UndefinedWidthError(
-        f"|gamma| of this light has no null: no minimum below {NULL_DEPTH} before it fades; use another definition"
-    )
+    raise UndefinedWidthError(f"|gamma| of this light has no null: no minimum below {NULL_DEPTH} before it fades; use another definition")
 
 
 COHERENCE_DEFINITIONS: tuple[CoherenceDefinition, ...] = (
@@ -143,9 +153,7 @@ COHERENCE_DEFINITIONS: tuple[CoherenceDefinition, ...] = (
     ),
     CoherenceDefinition(name="power", words="integral of |gamma|^2 over all delays", time_si=_power, citation="mandel-wolf"),
     CoherenceDefinition(name="half", words="full width of |gamma| at one half", time_si=_half, citation="goodman"),
-    CoherenceDefinition(
-        name="e-fold", words="delay from zero at which |gamma| first falls to 1/e", time_si=_e_fold, citation="goodman"
-    ),
+    CoherenceDefinition(name="e-fold", words="delay from zero at which |gamma| first falls to 1/e", time_si=_e_fold, citation="goodman"),
     CoherenceDefinition(
         name="first-null",
         words=f"delay from zero of the first minimum of |gamma| below {NULL_DEPTH}",

@@ -13,9 +13,7 @@ from ..spectra import Spectrum
 from ..units import SPEED_OF_LIGHT, FloatArray, as_si
 
 
-def two_beam_signal(
-    light: Spectrum, opd: Any, *, opd_centre: Any = 0 * u.m, contrast: float = 1.0, phase: Any = 0 * u.rad
-) -> FloatArray:
+def two_beam_signal(light: Spectrum, opd: Any, *, opd_centre: Any = 0 * u.m, contrast: float = 1.0, phase: Any = 0 * u.rad) -> FloatArray:
     """Signal over its mean: 1 + C Re[gamma((x - x0) / c) exp(-i phi)] for two arms of equal dispersion.
 
     Parameters

@@ -5,7 +5,8 @@ from .layout import ScanLayout
 from .reduction import ScanCurves, ScanResult, compared, reduce_scan
 from .scan import Scan, read_scan
 from .spectrum import ScanLine, ScanSpectrum, spectrum_from_scan
-from .verdict import Comparison, Outcome, Tolerances, judged, overall
+from .thinning import thinned
+from .verdict import Comparison, Outcome, Tolerances, comparisons_text, judged, overall
 
 __all__ = [
     "Comparison",
@@ -19,10 +20,12 @@ __all__ = [
     "ScanSpectrum",
     "Tolerances",
     "compared",
+    "comparisons_text",
     "even_scan",
     "judged",
     "overall",
     "read_scan",
     "reduce_scan",
     "spectrum_from_scan",
+    "thinned",
 ]

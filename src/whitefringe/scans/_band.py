@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 import numpy as np
@@ -100,4 +101,5 @@ def _noise_near(power: FloatArray, first: int, last: int, carrier: float, floor:
     # white noise exceeds 5 times its mean in 0.7 % of the bins; leaving those out lowers the mean by 4 %
     level = float(np.median(power[bins])) / np.log(2.0)
     kept = power[bins][power[bins] < 5 * level]
-    return float(np.mean(kept)) / (1 - 5 * np.exp(-5.0) / (1 - np.exp(-5.0)))
+    tail = math.exp(-5.0)
+    return float(np.mean(kept)) / (1 - 5 * tail / (1 - tail))

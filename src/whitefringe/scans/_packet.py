@@ -14,8 +14,8 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 from scipy.optimize import brentq
-from scipy.signal import sosfiltfilt
 from scipy.signal import butter as butterworth
+from scipy.signal import sosfiltfilt
 
 from ..units import FloatArray
 from ._band import Band
@@ -81,7 +81,7 @@ class Packet:
         spectrum = np.zeros(count, dtype=complex)
         first = round(float(self.frequency[0]) * self.span)
         spectrum[first : first + self.frequency.size] = self.coefficients
-        return self.origin + np.arange(count) * (self.span / count), np.fft.ifft(spectrum) * count
+        return np.asarray(self.origin + np.arange(count) * (self.span / count), dtype=float), np.fft.ifft(spectrum) * count
 
     def envelope(self, x: float) -> Estimate:
         """|z(x)|, with the in-phase part of the noise as its error."""

@@ -142,9 +142,7 @@ def reduce_scan(
     return compared(result, expected, tolerances or Tolerances(), expected_contrast)
 
 
-def compared(
-    result: ScanResult, expected: Spectrum, tolerances: Tolerances, expected_contrast: float = 1.0
-) -> ScanResult:
+def compared(result: ScanResult, expected: Spectrum, tolerances: Tolerances, expected_contrast: float = 1.0) -> ScanResult:
     """Return the result with comparisons against predicted light, and the verdict.
 
     A scan without a path scale is compared by its packet width in fringe periods; its wavelength is then not measured.
@@ -203,7 +201,7 @@ def _no_fringe(scan: Scan, even: EvenScan) -> NoFringeError:
     noise = sigma * np.sqrt(2.0 * bins / values.size) * np.sqrt(2.0)
     limit = noise * (np.sqrt(2 * np.log(values.size)) + 1.645) / np.sqrt(2.0)
     return NoFringeError(
-        f"{scan.name}: no fringes above the noise; a packet longer than a twelfth of the scan would have a contrast below {limit:.2g} (95 %)",
+        f"{scan.name}: no fringes above the noise; a packet longer than a twelfth of the scan has a contrast below {limit:.2g} (95 %)",
         upper_limit=float(limit),
     )
 
@@ -255,14 +253,16 @@ def _result(
         factor = scale if out is unit else 1.0
         sigma = packet.uncertainty(estimate)
         return Measured(
-            value=estimate.value * factor * out, uncertainty=sigma * factor * out, definition=words, method=METHOD, citation="takeda"
+            value=estimate.value * factor * out,
+            uncertainty=sigma * factor * out,
+            definition=words,
+            method=METHOD,
+            citation="takeda",
         )
 
     one = u.dimensionless_unscaled
     period = Estimate(1 / frequency.value, -frequency.gradient / frequency.value**2)
-    fringes = Estimate(
-        width.value * frequency.value, width.gradient * frequency.value + frequency.gradient * width.value
-    )
+    fringes = Estimate(width.value * frequency.value, width.gradient * frequency.value + frequency.gradient * width.value)
     contrast = measured(height, "greatest contrast of the packet", one)
     fringe_period = measured(period, "fringe period at the packet centre")
     return ScanResult(

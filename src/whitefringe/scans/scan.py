@@ -70,9 +70,7 @@ class Scan:
 
 
 def _frozen_quantity(value: Any, name: str) -> u.Quantity:
-    if not isinstance(value, u.Quantity) or not (
-        value.unit.is_equivalent(u.m) or value.unit.is_equivalent(u.s) or value.unit == STEP
-    ):
+    if not isinstance(value, u.Quantity) or not (value.unit.is_equivalent(u.m) or value.unit.is_equivalent(u.s) or value.unit == STEP):
         raise ScanLayoutError(f"{name} must be a Quantity (a length, or units.STEP for a stage without scale; a time for time)")
     quantity = u.Quantity(value, dtype=float, copy=True)
     quantity.setflags(write=False)
@@ -113,9 +111,7 @@ def read_scan(path: str | Path, layout: ScanLayout) -> Scan:
     if position.unit != STEP and not position.unit.is_equivalent(u.m):
         raise ScanLayoutError(f"{path}: the position column is in {position.unit}; it must be a length, or steps without a unit")
     if position.unit != STEP and layout.opd_per_step_si is not None:
-        raise ScanLayoutError(
-            f"{path}: the position column is in {position.unit}, so the layout must not give a length per step as well"
-        )
+        raise ScanLayoutError(f"{path}: the position column is in {position.unit}, so the layout must not give a length per step as well")
     return Scan(
         position=position,
         signals=signals,

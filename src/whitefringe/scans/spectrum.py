@@ -132,7 +132,11 @@ def _line(even: EvenScan, amplitude: FloatArray, peak: int, grid: float, noise: 
     unit, scale = (u.um, 1e-6) if even.path_known else (STEP, 1.0)
     method = "peak of the Hann-windowed spectrum"
     where = Measured(
-        value=frequency * scale / unit, uncertainty=sigma * scale / unit, definition="fringe frequency", method=method, citation="kay"
+        value=frequency * scale / unit,
+        uncertainty=sigma * scale / unit,
+        definition="fringe frequency",
+        method=method,
+        citation="kay",
     )
     wave = None
     if even.path_known:
@@ -151,7 +155,7 @@ def _beat(lines: tuple[ScanLine, ...], unit: u.UnitBase) -> Measured | None:
         return None
     first, second = lines[0].frequency, lines[1].frequency
     distance = abs(first.value - second.value)
-    sigma = np.sqrt(first.uncertainty**2 + second.uncertainty**2)
+    sigma = np.sqrt(sum(u.Quantity(line.uncertainty) ** 2 for line in (first, second)))
     return Measured(
         value=(1 / distance).to(unit),
         uncertainty=(sigma / distance**2).to(unit),

@@ -103,3 +103,15 @@ def overall(outcomes: Iterable[Outcome | None]) -> Outcome:
         if outcome in found:
             return outcome
     return Outcome.INSIDE if found else Outcome.NOT_MEASURED
+
+
+def comparisons_text(comparisons: Iterable[Comparison]) -> str:
+    """Lay out comparisons as lines of text, with fixed digits: stable for notebooks under test."""
+    lines = []
+    for item in comparisons:
+        ratio = "none" if item.ratio is None else item.ratio.text
+        limits = "not set" if item.tolerance is None else f"{item.tolerance[0]:g} to {item.tolerance[1]:g}"
+        outcome = "not judged" if item.outcome is None else str(item.outcome)
+        reason = f" ({item.reason})" if item.reason else ""
+        lines.append(f"{item.name:<13} {ratio:<18} tolerance {limits:<15} {outcome}{reason}")
+    return "\n".join(lines)

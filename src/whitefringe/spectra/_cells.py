@@ -12,9 +12,7 @@ _NODES = np.array([-1.0, 1.0]) / np.sqrt(3.0)
 """Two-point Gauss-Legendre nodes: exact for cubics in every piece."""
 
 
-def cell_means(
-    function: Callable[[FloatArray], FloatArray], low: float, high: float, cells: int, breakpoints: FloatArray
-) -> FloatArray:
+def cell_means(function: Callable[[FloatArray], FloatArray], low: float, high: float, cells: int, breakpoints: FloatArray) -> FloatArray:
     """Mean of `function` in each of `cells` equal cells between `low` and `high`.
 
     Each cell is cut at the breakpoints inside it and every piece is integrated by two Gauss-Legendre nodes, so a kink costs no

@@ -126,7 +126,7 @@ class Gaussian(_Shape):
 
     shape: ClassVar[str] = "gaussian"
     centre: u.Quantity = parameter("centre", u.um, low=0.4, high=2.5, step=0.005, start=1.65)
-    fwhm: u.Quantity = parameter("full width at half maximum", u.nm, low=5.0, high=300.0, step=5.0, start=250.0)
+    fwhm: u.Quantity = parameter("full width (FWHM)", u.nm, low=5.0, high=300.0, step=5.0, start=250.0)
 
     def __post_init__(self) -> None:
         width_si(float(as_frequency_si(self.centre, "centre")), self.fwhm, "fwhm")

@@ -94,7 +94,10 @@ def equivalent_width(spectrum: Spectrum) -> Measured:
         raise UndefinedWidthError("light of lines only has no equivalent width: there is no continuum")
     value = spectrum.continuum_rate / float(np.max(spectrum.density)) * u.Hz
     return Measured(
-        value=value.to(u.THz), definition="equivalent width: integral over maximum", method="sum over cells", citation="tokunaga-vacca"
+        value=value.to(u.THz),
+        definition="equivalent width: integral over maximum",
+        method="sum over cells",
+        citation="tokunaga-vacca",
     )
 
 

@@ -97,7 +97,7 @@ class Thermal:
 
     @cached_property
     def _scale(self) -> float:
-        """k T / h [Hz]."""
+        """K T / h [Hz]."""
         return positive_si(self.temperature, u.K, "temperature") * float(k_B.si.value) / float(h.si.value)
 
     @property
@@ -127,7 +127,7 @@ class Diode:
 
     shape: ClassVar[str] = "diode"
     centre: u.Quantity = parameter("centre", u.um, low=0.4, high=2.5, step=0.005, start=1.65)
-    fwhm: u.Quantity = parameter("full width at half maximum", u.nm, low=5.0, high=300.0, step=5.0, start=60.0)
+    fwhm: u.Quantity = parameter("full width (FWHM)", u.nm, low=5.0, high=300.0, step=5.0, start=60.0)
 
     def __post_init__(self) -> None:
         _ = self._shape.support_si

@@ -174,9 +174,7 @@ class Spectrum:
         """Return the light that is left after the filters, on a grid that ends where they end."""
         edges = self.start_si + self.step_si * np.arange(self.density.size + 1)
         continuum = (edges[0], edges[-1]) if self.density.size else (0.0, 0.0)
-        return _compose(
-            self.density_si, continuum, [edges], self.lines, filters, samples or max(self.density.size, 4), self.weight
-        )
+        return _compose(self.density_si, continuum, [edges], self.lines, filters, samples or max(self.density.size, 4), self.weight)
 
     def power_weighted(self) -> Spectrum:
         """Return the same light weighted by energy instead of photons: times nu over the mean frequency.
@@ -262,9 +260,7 @@ def _compose(
 
     breakpoints = np.concatenate([*kinks, *(np.asarray(item.breakpoints_si) for item in filters)])
     low = max(low, high * 1e-9)  # a source may start at zero frequency, a grid may not
-    return Spectrum.from_function(
-        product, (low, high), breakpoints=breakpoints, samples=samples, lines=left, weight=weight
-    )
+    return Spectrum.from_function(product, (low, high), breakpoints=breakpoints, samples=samples, lines=left, weight=weight)
 
 
 def _line_through(line: Line, filters: tuple[Filter, ...]) -> Line:

@@ -1,0 +1,188 @@
+"""`Bench`: the state that controls, plots and read-outs share.
+
+    control --> Bench.update(**changes) --> Setup (frozen) --> core functions --> BenchResults (frozen) --> plots, read-outs
+
+No widget talks to another; each listens to the bench. The bench itself knows no widget library, so it serves scripts and tests as well.
+"""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from threading import RLock
+from typing import Any
+
+import astropy.units as u
+import numpy as np
+
+from ..coherence import coherence_length, packet_width, self_coherence
+from ..errors import InputError, UndefinedWidthError
+from ..results import Measured
+from ..scans import Scan, ScanResult, compared, reduce_scan
+from ..setup import Setup
+from ..spectra import Spectrum, mean_wavelength
+
+
+@dataclass(frozen=True, kw_only=True)
+class BenchResults:
+    """Everything that is shown, computed once per change.
+
+    `gamma` is the complex degree of coherence at the delay cursor; `width` or `length` is None where this light has none.
+    """
+
+    light: Spectrum
+    wavelength: Measured
+    width: Measured | None
+    length: Measured | None
+    gamma: complex
+    reduction: ScanResult | None
+
+
+class Bench:
+    """Shared state of a dashboard.
+
+    Parameters
+    ----------
+    setup : Setup
+    scan : Scan, optional
+        A recorded scan; reduced once, compared again at every change.
+    strict : bool, optional
+        Raise errors again that callbacks would only show: for tests and notebooks under test. By default what the environment
+        variable WHITEFRINGE_STRICT says (``1``: yes).
+
+    Examples
+    --------
+    >>> from whitefringe import demo, setup
+    >>> bench = Bench(setup.Setup(source=demo.LAMP, filters=(demo.bench_filter(),)), demo.bench_scan())
+    >>> print(bench.summary())
+    wavelength 1.6393 um, packet width 12.274 um, delay 0.00 um, contrast there 1.0000, verdict outside
+    """
+
+    def __init__(self, setup: Setup, scan: Scan | None = None, *, strict: bool | None = None) -> None:
+        self.lock = RLock()
+        self.strict = os.environ.get("WHITEFRINGE_STRICT") == "1" if strict is None else strict
+        self.problem = ""
+        self._listeners: list[Callable[[], None]] = []
+        self.scan = scan
+        self._reduced = None if scan is None else reduce_scan(scan, definition=setup.definition)
+        self.setup = setup
+        self.results = self._evaluate(setup, None)
+
+    def update(self, **changes: Any) -> None:
+        """Change fields of the setup, recompute, and tell every listener.
+
+        Raises
+        ------
+        InputError
+            A field that a setup does not have, or a value that cannot be: setup and results then stay as they were.
+        """
+        with self.lock:
+            unknown = [name for name in changes if name not in Setup.__dataclass_fields__]
+            if unknown:
+                raise InputError(f"a setup has no field {unknown[0]!r}; its fields are {', '.join(Setup.__dataclass_fields__)}")
+            setup = replace(self.setup, **changes)
+            if "definition" in changes and self.scan is not None:
+                self._reduced = reduce_scan(self.scan, definition=setup.definition)
+            results = self._evaluate(setup, self.results if set(changes) == {"delay"} else None)
+            self.setup, self.results, self.problem = setup, results, ""
+            self._tell()
+
+    def report(self, problem: str) -> None:
+        """Show a problem; setup and results stay as they are."""
+        with self.lock:
+            self.problem = problem
+            self._tell()
+
+    def listen(self, listener: Callable[[], None]) -> None:
+        """Call `listener` after every change, until `ignore`."""
+        with self.lock:
+            self._listeners.append(listener)
+
+    def ignore(self, listener: Callable[[], None]) -> None:
+        """Stop calling `listener`."""
+        with self.lock:
+            self._listeners = [other for other in self._listeners if other != listener]
+
+    def _tell(self) -> None:
+        for listener in tuple(self._listeners):
+            listener()
+
+    def _evaluate(self, setup: Setup, known: BenchResults | None) -> BenchResults:
+        light = known.light if known else setup.light
+        gamma = complex(self_coherence(light, setup.delay))
+        if known:
+            return replace(known, gamma=gamma)
+        reduction = self._reduced
+        if reduction is not None:
+            reduction = compared(reduction, light, setup.tolerances, setup.expected_contrast)
+        return BenchResults(
+            light=light,
+            wavelength=mean_wavelength(light),
+            width=_or_none(packet_width, light),
+            length=_or_none(lambda spectrum: coherence_length(spectrum, setup.definition), light),
+            gamma=gamma,
+            reduction=reduction,
+        )
+
+    def summary(self) -> str:
+        """Return the state in one line, at fixed precision: stable text for notebooks under test."""
+        results = self.results
+        width = "none" if results.width is None else f"{results.width.to_value(u.um):.3f} um"
+        verdict = "no scan" if results.reduction is None else str(results.reduction.verdict)
+        text = (
+            f"wavelength {results.wavelength.to_value(u.um):.4f} um, packet width {width}, "
+            f"delay {self.setup.delay.to_value(u.um):.2f} um, contrast there {abs(results.gamma):.4f}, verdict {verdict}"
+        )
+        return f"{text}, problem: {self.problem}" if self.problem else text
+
+    def as_code(self) -> str:
+        """Return a script that computes what is shown without widgets."""
+        filters = ", ".join(_code(item) for item in self.setup.filters)
+        lines = [
+            "import astropy.units as u",
+            "from whitefringe import coherence, scans, spectra",
+            f"light = spectra.detected({_code(self.setup.source)}{', ' if filters else ''}{filters})",
+            f"gamma = coherence.self_coherence(light, {self.setup.delay.to_value(u.um):g} * u.um)",
+            f"length = coherence.coherence_length(light, {self.setup.definition!r})",
+        ]
+        if self.scan is not None:
+            lines += [
+                f"scan = scans.read_scan({self.scan.provenance.get('path', 'scan.ecsv')!r}, {_code(self.setup.layout)})",
+                f"result = scans.reduce_scan(scan, light, expected_contrast={self.setup.expected_contrast:g}, "
+                f"tolerances={_code(self.setup.tolerances)})",
+            ]
+        return "\n".join(lines)
+
+
+def _or_none(measure: Callable[[Spectrum], Measured], light: Spectrum) -> Measured | None:
+    try:
+        return measure(light)
+    except UndefinedWidthError:
+        return None
+
+
+def _code(shape: Any) -> str:
+    """Write a frozen object as the call that makes it; fields that stand at their default are left out."""
+    name = type(shape).__name__
+    if name == "Tabulated":
+        return f"spectra.read_filter({shape.origin!r})"
+    if name == "Lines":
+        return f"spectra.Lines([{', '.join(_code(line) for line in shape.lines)}])"
+    area = "scans" if type(shape).__module__.startswith("whitefringe.scans") else "spectra"
+    parts = []
+    for item in shape.__dataclass_fields__.values():
+        value = getattr(shape, item.name)
+        if item.init and not _same(value, item.default):
+            parts.append(f"{item.name}={_value_code(value)}")
+    return f"{area}.{name}({', '.join(parts)})"
+
+
+def _same(value: Any, default: Any) -> bool:
+    return type(value) is type(default) and bool(np.all(value == default))
+
+
+def _value_code(value: Any) -> str:
+    if isinstance(value, u.Quantity):
+        return f'u.Quantity("{value.value:.12g} {value.unit}")'
+    return _code(value) if hasattr(value, "__dataclass_fields__") else repr(value)

@@ -1,0 +1,5 @@
+"""Ready-made panels."""
+
+from .bench import BenchPanel
+
+__all__ = ["BenchPanel"]
