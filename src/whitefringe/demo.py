@@ -120,7 +120,7 @@ def write_bench(folder: str | Path, *, overwrite: bool = False) -> tuple[Path, .
     paths = tuple(folder / name for name in names)
     for path in paths:
         if path.exists() and not overwrite:
-            raise FileContentError(f"{path}: the file exists; say overwrite=True to replace it")
+            raise FileContentError(f"{path}: the file exists; say overwrite=True (--overwrite) to replace it")
     curve = bench_filter()
     filter_table = Table(
         {"wavelength": curve.wavelength, "transmission": curve.transmission_values},

@@ -21,7 +21,7 @@
     [tolerances]
     contrast = [0.9, 1.1]
 
-Numbers with a unit are written as text, ``"2900 K"``. Files are looked for beside the setup file.
+A tolerance of ``"none"`` is not judged. Numbers with a unit are written as text, ``"2900 K"``. Files are looked for beside the setup file.
 """
 
 from __future__ import annotations
@@ -39,6 +39,7 @@ from .errors import InputError, SetupError, WhitefringeError
 from .io import read_toml
 from .scans import ScanLayout, Tolerances
 from .spectra import FILTER_SHAPES, SOURCE_SHAPES, Filter, Line, Lines, Source, Spectrum, Tabulated, detected, read_filter
+from .units import as_si
 
 
 def _quantity(value: Any) -> Any:
@@ -64,6 +65,7 @@ def _unit(value: Any) -> Any:
 
 _Quantity = Annotated[Any, BeforeValidator(_quantity)]
 _Unit = Annotated[Any, BeforeValidator(_unit)]
+_Limits = Annotated[tuple[float, float] | None, BeforeValidator(lambda value: None if value == "none" else value)]
 
 
 class _Entry(BaseModel):
@@ -101,6 +103,8 @@ def _entry_for(cls: type[Any]) -> type[BaseModel]:
         kind = hints[item.name]
         if kind is u.Quantity or u.Quantity in getattr(kind, "__args__", ()):
             kind = _Quantity
+        elif kind == tuple[float, float] | None:
+            kind = _Limits
         entries[item.name] = (kind, ... if item.default is MISSING else item.default)
     return create_model(cls.__name__, __base__=_Entry, **entries)
 
@@ -135,6 +139,11 @@ class Setup:
     origin: str = ""
 
     def __post_init__(self) -> None:
+        if not isinstance(self.source, Source) or not all(isinstance(item, Filter) for item in _tuple(self.filters)):
+            raise InputError("a setup needs a source such as spectra.Thermal and a tuple of filters such as (spectra.TopHat(...),)")
+        if not isinstance(self.layout, ScanLayout) or not isinstance(self.tolerances, Tolerances):
+            raise InputError("layout must be a scans.ScanLayout and tolerances a scans.Tolerances")
+        as_si(self.delay, u.m, "delay", "um")
         names = [item.name for item in COHERENCE_DEFINITIONS]
         if self.definition not in names:
             raise InputError(f"definition must be one of {', '.join(names)}; got {self.definition!r}")
@@ -169,6 +178,10 @@ class Setup:
                 name=entry.name,
                 origin=str(path),
             )
+
+
+def _tuple(value: Any) -> tuple[Any, ...]:
+    return value if isinstance(value, tuple) else (value, None)
 
 
 class _KeyPath:

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import astropy.units as u
 
 from ..coherence import COHERENCE_DEFINITIONS, DEFAULT_DEFINITION, coherence_length, packet_width
-from ..errors import UndefinedWidthError
+from ..errors import InputError, UndefinedWidthError
 from ..results import Measured
 from ..spectra import Spectrum, equivalent_width, full_width_half_maximum, mean_wavelength, resolving_power
 
@@ -51,6 +51,8 @@ def predict_packet(light: Spectrum, definition: str = DEFAULT_DEFINITION) -> Pac
     >>> print(fringes.predict_packet(light)["packet width"])
     10.8604 um (full width of the packet at half its greatest contrast)
     """
+    if definition not in [item.name for item in COHERENCE_DEFINITIONS]:
+        raise InputError(f"definition must be one of {', '.join(item.name for item in COHERENCE_DEFINITIONS)}; got {definition!r}")
     wavelength = mean_wavelength(light)
     rows: list[tuple[str, Measured | str]] = [("mean wavelength", wavelength)]
     for name, measure in (

@@ -67,9 +67,10 @@ def simulate_lamp_scan(
     InputError
         A flux or noise below zero.
     """
-    if photons_per_sample <= 0 or read_noise < 0 or not 0 <= drift < 1:
+    finite = np.all(np.isfinite([photons_per_sample, read_noise, drift, dark]))
+    if not finite or photons_per_sample <= 0 or read_noise < 0 or not 0 <= drift < 1:
         raise InputError(
-            "photons_per_sample must be above 0, read_noise at least 0 and drift from 0 to below 1; got "
+            "photons_per_sample must be above 0, read_noise at least 0, drift from 0 to below 1, and all finite; got "
             f"{photons_per_sample}, {read_noise} and {drift}"
         )
     path = np.asarray(as_si(opd, u.m, "opd", "um"))

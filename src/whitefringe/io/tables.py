@@ -46,6 +46,8 @@ def read_table(path: str | Path) -> Table:
         The file is missing, empty, truncated, or has a row or entry that is not a number.
     """
     path = Path(path)
+    if path.is_dir():
+        raise FileContentError(f"{path}: this is a folder, not a file")
     if not path.is_file():
         raise FileContentError(f"{path}: no such file")
     if path.stat().st_size == 0:

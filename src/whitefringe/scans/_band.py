@@ -47,12 +47,11 @@ def find_band(values: FloatArray, step: float) -> Band | None:
     """
     power = np.abs(np.fft.rfft(values)) ** 2
     low = FEWEST_FRINGES
-    floor = float(np.median(power[low:-1])) / np.log(2.0)
-    if floor == 0:
-        floor = float(np.max(power)) * 1e-24
-    best = _strongest_box(power, low, floor)
+    local = noise_floor(power)
+    best = _strongest_box(power / local, low)
     if best is None:
         return None
+    floor = float(local[best[0] + best[1] // 2])
     first, last = _extent(power, *best, floor, low)
     inside = slice(first, last + 1)
     weight = np.maximum(power[inside] - floor, 0.0)
@@ -61,12 +60,28 @@ def find_band(values: FloatArray, step: float) -> Band | None:
     return Band(first=first, last=last, carrier=carrier_bin / (values.size * step), noise_power=noise)
 
 
-def _strongest_box(power: FloatArray, low: int, floor: float) -> tuple[int, int] | None:
-    """First bin and width of the most significant box, or None."""
-    sums = np.concatenate([[0.0], np.cumsum(power)]) / floor
-    widths = [2**k for k in range(int(np.log2(max(power.size // 4, 1))) + 1)]
-    threshold = np.log(power.size * len(widths) / FALSE_ALARM)
-    best, best_score = None, threshold
+def noise_floor(power: FloatArray) -> FloatArray:
+    """Noise power in each bin: the median within a factor 1.7 of its frequency, over ln 2, on a smooth curve.
+
+    Following the spectrum keeps the slow wander of a lamp, whose power falls with frequency, from passing for fringes.
+    """
+    anchors = np.unique(np.geomspace(FEWEST_FRINGES, power.size - 1, 48).astype(int))
+    medians = [float(np.median(power[int(k / 1.7) : min(int(1.7 * k) + 2, power.size)])) for k in anchors]
+    least = float(np.max(power)) * 1e-24 or 1.0
+    return np.asarray(np.exp(np.interp(np.arange(power.size), anchors, np.log(np.maximum(medians, least)))) / np.log(2.0))
+
+
+def trials(bins: int) -> tuple[list[int], float]:
+    """Widths of the boxes, and the score that the best of them must reach by chance once in 1 / FALSE_ALARM scans."""
+    widths = [2**k for k in range(int(np.log2(max(bins // 4, 1))) + 1)]
+    return widths, float(np.log(bins * len(widths) / FALSE_ALARM))
+
+
+def _strongest_box(relative: FloatArray, low: int) -> tuple[int, int] | None:
+    """First bin and width of the most significant box of power over noise, or None."""
+    sums = np.concatenate([[0.0], np.cumsum(relative)])
+    widths, best_score = trials(relative.size)
+    best = None
     for width in widths:
         total = sums[low + width :] - sums[low:-width]
         excess = np.maximum(total / width, 1.0)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 from scipy.optimize import brentq
+from scipy.signal import fftconvolve
 
 from ..errors import UndefinedWidthError
 from ._packet import Estimate, Packet, crossings_of
@@ -74,9 +75,12 @@ def _spectral_width(packet: Packet, centre: float, share: float) -> Estimate:
     def spectrum(f: float) -> float:
         return float(np.sum(packet.coefficients * response(f)).real)
 
-    grid = np.linspace(packet.frequency[0], packet.frequency[-1], 8 * packet.frequency.size)
-    kernel = np.sinc((grid[:, None] - packet.frequency) / spread)
-    values = np.asarray(kernel @ (base * packet.coefficients)).real
+    bins = packet.frequency.size
+    fine = np.arange(-8 * (bins - 1), 8 * (bins - 1) + 1) / 8
+    spaced = np.zeros(8 * (bins - 1) + 1, dtype=complex)
+    spaced[::8] = base * packet.coefficients
+    values = np.asarray(fftconvolve(spaced, np.sinc(share * fine), mode="valid" if bins == 1 else "same")).real
+    grid = packet.frequency[0] + np.arange(spaced.size) / 8 / packet.span
     top = int(np.argmax(values))
     target = 0.5 * values[top]
     above = np.flatnonzero(values >= target)

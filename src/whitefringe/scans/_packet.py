@@ -25,6 +25,12 @@ ComplexArray = NDArray[np.complex128]
 DRIFT_PERIODS = 24.0
 """Changes of the mean level slower than this many fringes are followed as drift."""
 
+PASSES = 2
+"""How often the fringes are taken out before the mean is found again."""
+
+END_TAPER = 2.5
+"""Length of the shoulders at both ends of a scan, in response lengths of the band (one over its width)."""
+
 OVERSAMPLING = 4
 """The envelope is searched on a grid this much finer than the samples."""
 
@@ -107,30 +113,56 @@ class Packet:
 
 
 def packet_in(axis: FloatArray, counts: FloatArray, band: Band) -> Packet:
-    """Remove the drift of the mean, and keep the band's Fourier coefficients of counts / mean - 1."""
-    span = float(axis[1] - axis[0]) * counts.size
-    mean = _mean_level(counts, band.carrier * float(axis[1] - axis[0]))
-    relative = counts / mean - 1.0
-    coefficients = 2.0 * np.fft.rfft(relative) / counts.size
+    """Remove the drift of the mean, and keep the band's Fourier coefficients of counts / mean - 1.
+
+    The mean is found twice, the second time with the fringes taken out: where fringes reach an end of the scan, they would bend it.
+    """
+    step = float(axis[1] - axis[0])
     bins = np.arange(band.first, band.last + 1)
-    # the band's noise power was found on raw counts
-    noise = 2.0 * np.sqrt(band.noise_power) / counts.size / float(np.mean(mean))
+    corner = 2.0 * band.carrier * step / DRIFT_PERIODS
+    mean = mean_level(counts, corner)
+    for _ in range(PASSES):
+        spectrum = np.fft.rfft(counts / mean - 1.0)
+        fringes = np.zeros_like(spectrum)
+        fringes[bins] = spectrum[bins]
+        mean = mean_level(counts - mean * np.fft.irfft(fringes, counts.size), corner)
+    relative = counts / mean - 1.0
+    reach = END_TAPER * step * counts.size / bins.size
+    inside = np.minimum(axis - axis[0], axis[-1] - axis)
+    first = _packet(axis, relative * _shoulders(inside, reach), bins, mean, band)
+    peak, _ = peak_of(first, band.carrier)
+    # the packet is Hermitian about its centre: a window that is symmetric about it leaves its group delay alone
+    half = max(min(peak - axis[0], axis[-1] - peak), reach)
+    return _packet(axis, relative * _shoulders(half - np.abs(axis - peak), reach), bins, mean, band)
+
+
+def _packet(axis: FloatArray, relative: FloatArray, bins: Any, mean: FloatArray, band: Band) -> Packet:
+    step = float(axis[1] - axis[0])
+    coefficients = 2.0 * np.fft.rfft(relative) / relative.size
     return Packet(
         coefficients=coefficients[bins],
-        frequency=bins / span,
+        frequency=bins / (step * relative.size),
         origin=float(axis[0]),
-        span=span,
-        noise=noise,
+        span=step * relative.size,
+        # the band's noise power was found on raw counts
+        noise=2.0 * float(np.sqrt(band.noise_power)) / relative.size / float(np.mean(mean)),
         mean_level=mean,
-        samples=counts.size,
+        samples=relative.size,
     )
 
 
-def _mean_level(counts: FloatArray, cycles_per_sample: float) -> FloatArray:
-    """Low-pass (zero-phase Butterworth, order 4 twice) that follows changes slower than `DRIFT_PERIODS` fringes."""
-    corner = min(2.0 * cycles_per_sample / DRIFT_PERIODS, 0.9)
+def _shoulders(inside: FloatArray, reach: float) -> FloatArray:
+    """One, falling to zero as a squared cosine where the distance `inside` from the nearer end is below `reach`.
+
+    What is cut off at an end would ring through the whole band; this lets it fade. Noise is left as it is where the packet may lie.
+    """
+    return np.asarray(np.sin(0.5 * np.pi * np.clip(inside / reach, 0.0, 1.0)) ** 2)
+
+
+def mean_level(counts: FloatArray, corner: float) -> FloatArray:
+    """Zero-phase low-pass (Butterworth, order 4 twice) of counts; `corner` over the Nyquist frequency."""
     sections = butterworth(4, corner, output="sos")
-    padding = min(counts.size - 1, int(3 * 2 / corner))
+    padding = min(counts.size - 1, int(6 / corner))
     return np.asarray(sosfiltfilt(sections, counts, padlen=padding))
 
 

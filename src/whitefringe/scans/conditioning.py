@@ -20,6 +20,10 @@ RUN_UP = 0.75
 """Rows at either end where the stage moves at less than this fraction of its usual step are left out: it is starting or stopping."""
 
 
+WIDEST_GAP = 2.5
+"""A step longer than this many usual ones is a gap: a spline across it would invent fringes."""
+
+
 @dataclass(frozen=True, kw_only=True, eq=False)
 class EvenScan:
     """A scan on an even axis.
@@ -66,6 +70,7 @@ def even_scan(scan: Scan) -> EvenScan:
             f"{scan.name}: the path runs backwards or stands still at data row {row} ({backwards.size} such rows); record one "
             "sweep per scan, or leave the position out to count rows"
         )
+    _refuse_gaps(scan, kept, axis)
     even, signal = _evenly(axis, signal, notes)
     return EvenScan(axis_si=read_only(even), signal=read_only(signal), unit=unit, notes=tuple(notes))
 
@@ -86,17 +91,16 @@ def _refuse_useless(scan: Scan) -> None:
         raise ConstantSignalError(f"{scan.name}: the signal is {signal[0]:g} in every row: is the column right, the shutter open?")
     if layout.saturation is None and _looks_clipped(signal):
         raise SaturatedError(
-            f"{scan.name}: the signal stays flat at its maximum {signal.max():g} several times, as a saturated detector does: record "
+            f"{scan.name}: the signal stays flat at its maximum {signal.max():g}, as that of a saturated detector does: record "
             "again with less light, or state a saturation level above it in the layout"
         )
 
 
 def _looks_clipped(signal: FloatArray) -> bool:
-    """Three runs or more of four equal samples or more at the very maximum."""
-    top = np.concatenate([[False], signal == signal.max(), [False]])
-    edges = np.flatnonzero(np.diff(top.astype(int)))
-    lengths = edges[1::2] - edges[::2]
-    return bool(np.sum(lengths >= 4) >= 3)
+    """Tell whether the very maximum occurs four times or more, and far more often than any other level of the upper half."""
+    levels, counts = np.unique(signal, return_counts=True)
+    upper = counts[:-1][levels[:-1] > 0.5 * (levels[0] + levels[-1])]
+    return bool(counts[-1] >= 4 and counts[-1] > 3 * np.max(upper, initial=0))
 
 
 def _moving_part(scan: Scan, notes: list[str]) -> slice:
@@ -111,12 +115,23 @@ def _moving_part(scan: Scan, notes: list[str]) -> slice:
     return slice(first, last)
 
 
+def _refuse_gaps(scan: Scan, kept: slice, axis: FloatArray) -> None:
+    steps = np.diff(axis)
+    widest = int(np.argmax(steps))
+    if steps[widest] > WIDEST_GAP * float(np.median(steps)):
+        row = kept.start + widest + 1
+        raise ScanError(
+            f"{scan.name}: the path jumps by {steps[widest] / np.median(steps):.1f} times its usual step after data row {row}: rows are missing "
+            "there; record the scan again, or cut it so that the packet lies on one side of the gap"
+        )
+
+
 def _path(scan: Scan, kept: slice, notes: list[str]) -> tuple[FloatArray, u.UnitBase]:
     layout, position = scan.layout, scan.position[kept]
     if layout.reference is not None:
         values = np.asarray(position.value, dtype=float)
         notes.append("path rebuilt from the phase of the reference channel")
-        return opd_from_reference(scan, kept, values), u.m
+        return opd_from_reference(scan, kept, values, notes), u.m
     if position.unit != STEP:
         return np.asarray(position.to_value(u.m)) * layout.passes, u.m
     if layout.opd_per_step_si is not None:

@@ -9,7 +9,7 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import ScanLayoutError
-from ..units import positive_si
+from ..units import as_si, positive_si
 
 Column = str | int
 
@@ -68,13 +68,19 @@ class ScanLayout:
             raise ScanLayoutError("give opd_per_step or stage_per_step, not both")
         if self.reference is not None and (self.opd_per_step is not None or self.stage_per_step is not None):
             raise ScanLayoutError("the path comes from the reference channel: leave out opd_per_step and stage_per_step")
-        if self.passes not in (1, 2, 4):
+        for name in ("signal", "reference", "position", "time"):
+            column = getattr(self, name)
+            if isinstance(column, bool) or not isinstance(column, (str, int, type(None))):
+                raise ScanLayoutError(f"{name} must be a column's name or its number from 0; got {column!r}")
+        if isinstance(self.passes, bool) or self.passes not in (1, 2, 4):
             raise ScanLayoutError(f"passes must be 1, 2 or 4; got {self.passes!r}")
         if self.passes != 1 and self.opd_per_step is not None:
             raise ScanLayoutError("opd_per_step is path difference already: leave passes at 1, or give stage_per_step")
         if self.reference_wavelength is not None:
             positive_si(self.reference_wavelength, u.m, "reference_wavelength", "nm")
         _ = self.opd_per_step_si
+        if not np.isfinite(self.dark) or not np.isfinite(self.dark if self.saturation is None else self.saturation):
+            raise ScanLayoutError(f"dark and saturation must be finite numbers of counts; got {self.dark} and {self.saturation}")
         if self.saturation is not None and not self.saturation > self.dark:
             raise ScanLayoutError(f"saturation ({self.saturation:g}) must lie above dark ({self.dark:g})")
 
@@ -85,5 +91,5 @@ class ScanLayout:
         per_step: Any = getattr(self, name)
         if per_step is None:
             return None
-        sign = float(np.sign(u.Quantity(per_step).value)) or 1.0
+        sign = -1.0 if np.all(as_si(per_step, u.m, name, "pm") < 0) else 1.0
         return sign * positive_si(per_step * sign, u.m, name, "pm") * (self.passes if name == "stage_per_step" else 1)

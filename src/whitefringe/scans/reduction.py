@@ -9,13 +9,14 @@ import astropy.units as u
 import numpy as np
 
 from ..coherence import packet_width as predicted_packet_width
-from ..errors import InputError, NoFringeError, PacketCutOffError, TooFewSamplesError, UndefinedWidthError
+from ..errors import InputError, NoFringeError, PacketCutOffError, ScanError, TooFewSamplesError, UndefinedWidthError
 from ..results import Measured
 from ..spectra import Spectrum, mean_wavelength
 from ..units import STEP, FloatArray, read_only
 from ._band import Band, detrended, find_band
 from ._coherence import DEFINITIONS_MEASURED, coherence_measured
-from ._packet import Estimate, Packet, centre_of, crossings_of, packet_in, peak_of
+from ._limits import missed_contrast
+from ._packet import END_TAPER, Estimate, Packet, centre_of, crossings_of, packet_in, peak_of
 from .conditioning import EvenScan, even_scan
 from .scan import Scan
 from .verdict import Comparison, Outcome, Tolerances, overall
@@ -25,6 +26,9 @@ FEWEST_PER_FRINGE = 4.0
 
 LEAST_SIGNAL_TO_NOISE = 5.0
 """Contrast over its uncertainty below which a packet does not count as found."""
+
+MOST_CONTRAST = 1.02
+"""A contrast that lies above this by five of its uncertainties is refused."""
 
 METHOD = "analytic signal in the fringes' band; white-noise errors, first order"
 
@@ -52,7 +56,7 @@ class ScanResult:
     packet_width_fringes : the same in fringe periods
     fringe_period, fringe_frequency : at the packet centre
     wavelength : the fringe period, where the path is known; else None
-    coherence_length : by the definition asked for
+    coherence_length : by the definition asked for; a reason in words where the packet does not show it
     signal_to_noise : contrast over its uncertainty
     samples_per_fringe : of the scan
     notes : what was done to the scan
@@ -66,7 +70,7 @@ class ScanResult:
     fringe_period: Measured
     fringe_frequency: Measured
     wavelength: Measured | None
-    coherence_length: Measured
+    coherence_length: Measured | str
     signal_to_noise: float
     samples_per_fringe: float
     notes: tuple[str, ...]
@@ -75,10 +79,10 @@ class ScanResult:
     verdict: Outcome | None = None
 
     @property
-    def rows(self) -> tuple[tuple[str, Measured], ...]:
+    def rows(self) -> tuple[tuple[str, Measured | str], ...]:
         """Name and number, in the order of a table."""
         names = ("contrast", "opd_centre", "packet_width", "packet_width_fringes", "fringe_period", "fringe_frequency")
-        rows = [(name.replace("_", " ").replace("opd", "OPD"), getattr(self, name)) for name in names]
+        rows: list[tuple[str, Measured | str]] = [(name.replace("_", " ").replace("opd", "OPD"), getattr(self, name)) for name in names]
         if self.wavelength is not None:
             rows.append(("wavelength", self.wavelength))
         return (*rows, ("coherence length", self.coherence_length))
@@ -119,8 +123,8 @@ def reduce_scan(
         Fewer than four samples per fringe.
     SaturatedError, ConstantSignalError, PacketCutOffError, NoFringeError, ReferenceLostError, ScanError
         See each; `NoFringeError.upper_limit` is the contrast that may have been missed.
-    UndefinedWidthError
-        The definition cannot be measured on this packet.
+    InputError
+        An unknown definition, or arguments that are no scan and no spectrum.
 
     Notes
     -----
@@ -131,6 +135,8 @@ def reduce_scan(
     ----------
     Takeda, Ina & Kobayashi 1982, doi:10.1364/JOSA.72.000156 (analytic signal); Kay 1993, ch. 3 (first-order errors).
     """
+    if not isinstance(scan, Scan) or not (expected is None or isinstance(expected, Spectrum)):
+        raise InputError("reduce_scan takes a scans.Scan and, for expected, a spectra.Spectrum")
     if definition not in DEFINITIONS_MEASURED:
         raise InputError(f"definition must be one of {', '.join(DEFINITIONS_MEASURED)}; got {definition!r}")
     even = even_scan(scan)
@@ -177,7 +183,7 @@ def _found_band(scan: Scan, even: EvenScan, expected: Spectrum | None) -> Band:
         wavelength = float(mean_wavelength(expected).value.to_value(u.m))
         _refuse_coarse(scan, wavelength / even.step, "expected ")
     if np.mean(even.signal) <= 0:
-        raise InputError(f"{scan.name}: the mean signal is not above the dark level {scan.layout.dark:g}: contrast has no meaning")
+        raise ScanError(f"{scan.name}: the mean signal is not above the dark level {scan.layout.dark:g}: contrast has no meaning")
     band = find_band(detrended(even.axis_si, even.signal), even.step)
     if band is None:
         raise _no_fringe(scan, even)
@@ -194,35 +200,52 @@ def _refuse_coarse(scan: Scan, samples_per_fringe: float, which: str) -> None:
 
 
 def _no_fringe(scan: Scan, even: EvenScan) -> NoFringeError:
-    """Say what contrast may have been missed: the strongest chance packet of a twelfth of the scan, plus 1.645 sigma (95 %)."""
+    """Say what contrast may have been missed."""
     values = detrended(even.axis_si, even.signal) / float(np.mean(even.signal))
-    sigma = float(np.std(values))
-    bins = 12
-    noise = sigma * np.sqrt(2.0 * bins / values.size) * np.sqrt(2.0)
-    limit = noise * (np.sqrt(2 * np.log(values.size)) + 1.645) / np.sqrt(2.0)
+    limit = missed_contrast(values)
     return NoFringeError(
         f"{scan.name}: no fringes above the noise; a packet longer than a twelfth of the scan has a contrast below {limit:.2g} (95 %)",
-        upper_limit=float(limit),
+        upper_limit=limit,
     )
 
 
 def _measured(scan: Scan, even: EvenScan, packet: Packet, band: Band, definition: str) -> ScanResult:
     peak, height = peak_of(packet, band.carrier)
     error = packet.sigma(height.gradient)
+    _refuse_impossible(scan, height.value, error)
     if height.value < LEAST_SIGNAL_TO_NOISE * error:
-        limit = height.value + 1.645 * error
+        limit = min(height.value + 1.645 * error, 1.0)
         raise NoFringeError(
             f"{scan.name}: the strongest packet is only {height.value / error:.1f} times its noise; contrast below {limit:.2g} (95 %)",
             upper_limit=limit,
         )
     halves = crossings_of(packet, peak, height, 0.5)
-    if halves is None:
+    if halves is None or not _clear_of_ends(packet, halves):
         raise PacketCutOffError(_cut_off(scan, even, packet, peak))
     centre = centre_of(packet, peak, band.carrier)
     frequency = packet.mean_frequency(centre.value)
     width = Estimate(halves[1].value - halves[0].value, halves[1].gradient - halves[0].gradient)
-    coherence = coherence_measured(packet, centre.value, peak, height, definition)
+    coherence: Estimate | str
+    try:
+        coherence = coherence_measured(packet, centre.value, peak, height, definition)
+    except UndefinedWidthError as reason:
+        coherence = str(reason)
     return _result(even, packet, height, centre, frequency, width, coherence, definition)
+
+
+def _refuse_impossible(scan: Scan, contrast: float, error: float) -> None:
+    if contrast - 5 * error > MOST_CONTRAST:
+        raise ScanError(
+            f"{scan.name}: the contrast comes out as {contrast:.3g}, which no light can have: the dark level {scan.layout.dark:g} is too high, "
+            "or the lamp flickered in step with the fringes"
+        )
+
+
+def _clear_of_ends(packet: Packet, halves: tuple[Estimate, Estimate]) -> bool:
+    """Tell whether the half-contrast points lie inside the shoulders that fade the scan's ends."""
+    response = END_TAPER * packet.span / packet.frequency.size
+    last = packet.origin + packet.span * (1 - 1 / packet.samples)
+    return halves[0].value - packet.origin > response and last - halves[1].value > response
 
 
 def _cut_off(scan: Scan, even: EvenScan, packet: Packet, peak: float) -> str:
@@ -232,7 +255,8 @@ def _cut_off(scan: Scan, even: EvenScan, packet: Packet, peak: float) -> str:
     where = (np.array([first, last, peak]) * even.unit).to_value(unit)
     return (
         f"{scan.name}: the packet is cut off: its contrast does not fall to half before the {side} of the scan (which runs from "
-        f"{where[0]:.6g} to {where[1]:.6g} {unit}, greatest contrast at {where[2]:.6g}): move or widen the scan"
+        f"{where[0]:.6g} to {where[1]:.6g} {unit}, greatest contrast at {where[2]:.6g}): move or widen the scan; fringes of one "
+        "strength throughout are those of a sharp line, or no fringes at all"
     )
 
 
@@ -243,7 +267,7 @@ def _result(
     centre: Estimate,
     frequency: Estimate,
     width: Estimate,
-    coherence: Estimate,
+    coherence: Estimate | str,
     definition: str,
 ) -> ScanResult:
     unit = u.um if even.path_known else STEP
@@ -273,7 +297,9 @@ def _result(
         fringe_period=fringe_period,
         fringe_frequency=measured(frequency.scaled(1 / scale), "fringe frequency at the packet centre", 1 / unit),
         wavelength=replace(fringe_period, definition="vacuum wavelength: the fringe period") if even.path_known else None,
-        coherence_length=measured(coherence, f"{definition}: {DEFINITIONS_MEASURED[definition]}"),
+        coherence_length=coherence
+        if isinstance(coherence, str)
+        else measured(coherence, f"{definition}: {DEFINITIONS_MEASURED[definition]}"),
         signal_to_noise=float(contrast.value / contrast.uncertainty),
         samples_per_fringe=float(1 / (frequency.value * even.step)),
         notes=even.notes,
@@ -293,6 +319,3 @@ def _curves(even: EvenScan, packet: Packet) -> ScanCurves:
         envelope=read_only(np.abs(z)),
         fringes=read_only(1.0 + z.real),
     )
-
-
-__all__ = ["ScanCurves", "ScanResult", "UndefinedWidthError", "compared", "reduce_scan"]

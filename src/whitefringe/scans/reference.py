@@ -21,8 +21,10 @@ FADED = 0.05
 """The reference's fringes must keep this fraction of their median amplitude."""
 
 
-def opd_from_reference(scan: Scan, kept: slice, position: FloatArray) -> FloatArray:
+def opd_from_reference(scan: Scan, kept: slice, position: FloatArray, notes: list[str]) -> FloatArray:
     """Return the path difference [m] at the kept rows, rising with the position, and zero where the position is.
+
+    Where the stage's zero lies outside the scan, the path is counted from the first kept row, and a note says so.
 
     Raises
     ------
@@ -53,8 +55,11 @@ def opd_from_reference(scan: Scan, kept: slice, position: FloatArray) -> FloatAr
         )
     wavelength = positive_si(scan.layout.reference_wavelength, u.m, "reference_wavelength")
     opd = np.unwrap(np.angle(analytic)) / (2 * np.pi) * wavelength * np.sign(position[-1] - position[0])
-    slope, intercept = np.polyfit(position - position.mean(), opd, 1)
-    return np.asarray(opd - intercept + slope * position.mean())
+    order = np.argsort(position)
+    if position[order[0]] <= 0 <= position[order[-1]]:
+        return np.asarray(opd - np.interp(0.0, position[order], opd[order]))
+    notes.append("path difference is counted from the first row: the stage's zero lies outside the scan")
+    return np.asarray(opd - opd[0])
 
 
 def _band_passed(values: FloatArray, carrier: float) -> FloatArray:

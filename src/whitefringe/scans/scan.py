@@ -40,7 +40,9 @@ class Scan:
     provenance: Mapping[str, str] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
-        position = _frozen_quantity(self.position, "position")
+        position = _frozen_quantity(self.position, "position", u.m, "a length, or units.STEP for a stage without scale")
+        if position.unit != STEP and self.layout.opd_per_step_si is not None:
+            raise ScanLayoutError("the position is a length already: leave opd_per_step and stage_per_step out of the layout")
         signals = {name: read_only(values) for name, values in self.signals.items()}
         if "signal" not in signals:
             raise ScanLayoutError(f'signals must hold "signal"; got {", ".join(signals) or "nothing"}')
@@ -53,7 +55,7 @@ class Scan:
         object.__setattr__(self, "signals", MappingProxyType(signals))
         object.__setattr__(self, "provenance", MappingProxyType(dict(self.provenance)))
         if self.time is not None:
-            object.__setattr__(self, "time", _frozen_quantity(self.time, "time"))
+            object.__setattr__(self, "time", _frozen_quantity(self.time, "time", u.s, "a time"))
 
     @property
     def signal(self) -> FloatArray:
@@ -69,9 +71,10 @@ class Scan:
         return Path(self.provenance.get("path", "scan")).name
 
 
-def _frozen_quantity(value: Any, name: str) -> u.Quantity:
-    if not isinstance(value, u.Quantity) or not (value.unit.is_equivalent(u.m) or value.unit.is_equivalent(u.s) or value.unit == STEP):
-        raise ScanLayoutError(f"{name} must be a Quantity (a length, or units.STEP for a stage without scale; a time for time)")
+def _frozen_quantity(value: Any, name: str, unit: u.UnitBase, accepted: str) -> u.Quantity:
+    steps = isinstance(value, u.Quantity) and name == "position" and value.unit == STEP
+    if not isinstance(value, u.Quantity) or not (steps or value.unit.is_equivalent(unit)):
+        raise ScanLayoutError(f"{name} must be a Quantity ({accepted})")
     quantity = u.Quantity(value, dtype=float, copy=True)
     quantity.setflags(write=False)
     return quantity
@@ -146,7 +149,8 @@ def _numbers(table: Any, which: Column, role: str, path: Any) -> FloatArray:
     column = _column(table, which, role, path)
     if column.dtype.kind not in "fiub" or column.ndim != 1:
         raise FileContentError(f"{path}: column {column.name!r} ({role}) does not hold one number per row")
-    values = np.asarray(column.filled(np.nan) if hasattr(column, "filled") else column, dtype=float)
+    floats = column.astype(float)
+    values = np.asarray(floats.filled(np.nan) if hasattr(floats, "filled") else floats, dtype=float)
     bad = np.flatnonzero(~np.isfinite(values))
     if bad.size:
         raise FileContentError(

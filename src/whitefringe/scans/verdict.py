@@ -42,7 +42,8 @@ class Tolerances:
     def __post_init__(self) -> None:
         for name in ("contrast", "wavelength", "packet_width"):
             limits = getattr(self, name)
-            if limits is not None and not (len(limits) == 2 and 0 <= limits[0] < limits[1]):
+            numbers = isinstance(limits, (tuple, list)) and len(limits) == 2 and all(isinstance(x, (int, float)) for x in limits)
+            if limits is not None and not (numbers and 0 <= limits[0] < limits[1]):
                 raise InputError(f"tolerance {name} must be (low, high) with 0 <= low < high; got {limits}")
 
 
