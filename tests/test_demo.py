@@ -57,7 +57,7 @@ def test_objects_say_that_they_are_invented():
 
 def test_existing_files_are_kept(tmp_path):
     (tmp_path / "bench_scan.ecsv").write_text("mine", encoding="utf-8")
-    with pytest.raises(FileContentError, match=r"bench_scan.ecsv: the file exists; say overwrite=True to replace it"):
+    with pytest.raises(FileContentError, match=r"bench_scan.ecsv: the file exists; say overwrite=True \(--overwrite\) to replace it"):
         demo.write_bench(tmp_path)
     assert [path.name for path in tmp_path.iterdir()] == ["bench_scan.ecsv"]
     assert (tmp_path / "bench_scan.ecsv").read_text(encoding="utf-8") == "mine"

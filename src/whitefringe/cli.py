@@ -6,16 +6,20 @@ Exit status: 0 within tolerance, 1 outside, 2 bad usage or input, 3 undecided or
 from __future__ import annotations
 
 import argparse
+import io
 import json
+import sys
+import traceback
 import warnings
 from collections.abc import Sequence
 from typing import Any
 
 from rich.console import Console
 from rich.table import Table
+from rich.text import Text
 
 from . import __version__
-from .errors import ScanError, ScanLayoutError, UndefinedWidthError, WhitefringeError, WhitefringeWarning
+from .errors import NoFringeError, ScanError, ScanLayoutError, UndefinedWidthError, WhitefringeError, WhitefringeWarning
 from .results import Measured
 
 EXIT = {"inside": 0, "outside": 1, "undecided": 3, "not measured": 3}
@@ -27,7 +31,11 @@ STYLES = {"inside": "green", "outside": "bold red", "undecided": "yellow", "not 
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run a command and return its exit status."""
     options = _parser().parse_args(arguments)
-    err = Console(stderr=True)
+    for stream in (sys.stdout, sys.stderr):
+        # a terminal that cannot show a sign shows another instead of stopping
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="replace")
+    err = Console(stderr=True, markup=False, emoji=False, highlight=False)
     with warnings.catch_warnings(record=True) as caught:
         warnings.simplefilter("always", WhitefringeWarning)
         try:
@@ -37,17 +45,23 @@ def main(arguments: Sequence[str] | None = None) -> int:
             status = _refuse(options, error, NOT_MEASURED if unmeasured else BAD_INPUT, err)
         except OSError as error:
             status = _refuse(options, error, BAD_INPUT, err)
+        except Exception as error:  # status 1 means "outside", so a fault of ours must not end with it
+            err.print(traceback.format_exc(), soft_wrap=True)
+            status = _refuse(options, error, BAD_INPUT, err)
     for warning in caught:
-        err.print(f"note: {warning.message}", style="yellow", markup=False, highlight=False, soft_wrap=True)
+        err.print(f"note: {warning.message}", style="yellow", soft_wrap=True)
     return status
 
 
 def _refuse(options: argparse.Namespace, error: Exception, status: int, err: Console) -> int:
     if getattr(options, "json", False):
         verdict = "not measured" if status == NOT_MEASURED else "bad input"
-        print(json.dumps({"verdict": verdict, "error": type(error).__name__, "reason": str(error)}, indent=2))
+        answer: dict[str, Any] = {"verdict": verdict, "error": type(error).__name__, "reason": str(error)}
+        if isinstance(error, NoFringeError):
+            answer |= {"upper_limit": error.upper_limit, "confidence": error.confidence}
+        print(json.dumps(answer, indent=2))
     word = "not measured" if status == NOT_MEASURED else "error"
-    err.print(f"{word}: {error}", style="red", markup=False, highlight=False, soft_wrap=True)
+    err.print(f"{word}: {error}", style="red", soft_wrap=True)
     return status
 
 
@@ -91,12 +105,12 @@ def _measure(options: argparse.Namespace) -> int:
     if options.json:
         print(json.dumps(_measure_json(scan, setup, result), indent=2))
     else:
-        console = Console()
+        console = Console(markup=False, emoji=False, highlight=False)
         console.print(_results_table(f"{scan.name} with {setup.name}", result.rows))
         console.print(_comparison_table(result.comparisons))
         for note in result.notes:
-            console.print(f"note: {note}", markup=False, highlight=False, soft_wrap=True)
-        console.print(f"verdict: [{STYLES[verdict]}]{verdict}[/]", highlight=False)
+            console.print(f"note: {note}", soft_wrap=True)
+        console.print("verdict:", Text(verdict, style=STYLES[verdict]))
     return EXIT[verdict]
 
 
@@ -110,7 +124,7 @@ def _predict(options: argparse.Namespace) -> int:
         numbers = {name: _json_of(value) for name, value in prediction.rows}
         print(json.dumps({"setup": setup.name, "prediction": numbers}, indent=2))
     else:
-        Console().print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
+        Console(markup=False, emoji=False, highlight=False).print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
     return 0
 
 
@@ -123,15 +137,15 @@ def _demo(options: argparse.Namespace) -> int:
 
 
 def _results_table(title: str, rows: Sequence[tuple[str, Measured | str]]) -> Table:
-    table = Table(title=title, title_justify="left")
-    table.add_column("quantity")
+    table = Table(title=Text(title), title_justify="left")
+    table.add_column("quantity", no_wrap=True)
     table.add_column("value", justify="right", no_wrap=True)
     table.add_column("definition")
     for name, value in rows:
         if isinstance(value, Measured):
-            table.add_row(name, value.text, value.definition)
+            table.add_row(*(Text(cell) for cell in (name, value.text, value.definition)))
         else:
-            table.add_row(name, "none", value)
+            table.add_row(*(Text(cell) for cell in (name, "none", value)))
     return table
 
 
@@ -143,8 +157,8 @@ def _comparison_table(comparisons: Sequence[Any]) -> Table:
         limits = "not set" if item.tolerance is None else f"{item.tolerance[0]:g} to {item.tolerance[1]:g}"
         ratio = item.ratio.text if item.ratio is not None else "none"
         outcome = "not judged" if item.outcome is None else str(item.outcome)
-        outcome = f"[{STYLES.get(outcome, 'dim')}]{outcome}[/]" + (f": {item.reason}" if item.reason else "")
-        table.add_row(item.name, item.predicted.text, ratio, limits, outcome)
+        shown = Text(outcome, style=STYLES.get(outcome, "dim")).append(f": {item.reason}" if item.reason else "")
+        table.add_row(item.name, item.predicted.text, ratio, limits, shown)
     return table
 
 

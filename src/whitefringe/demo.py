@@ -123,7 +123,7 @@ def write_bench(folder: str | Path, *, overwrite: bool = False) -> tuple[Path, .
             raise FileContentError(f"{path}: the file exists; say overwrite=True (--overwrite) to replace it")
     curve = bench_filter()
     filter_table = Table(
-        {"wavelength": curve.wavelength, "transmission": curve.transmission_values},
+        {"wavelength": curve.wavelength, "transmission": curve.transmission_values.value},
         meta={"description": "Larkmoor bench filter, invented; vacuum wavelengths; made by whitefringe.demo"},
     )
     write_table(filter_table, paths[1], overwrite=overwrite)

@@ -81,6 +81,8 @@ def rows_text(rows: Sequence[tuple[str, Measured | str]]) -> str:
     width  9 um  at half
     null   none  there is none
     """
+    if not rows:
+        return ""
     cells = [(name, v.text, v.definition) if isinstance(v, Measured) else (name, "none", v) for name, v in rows]
     first, second = (max(len(cell[k]) for cell in cells) for k in (0, 1))
     return "\n".join(f"{name:<{first}}  {value:<{second}}  {words}".rstrip() for name, value, words in cells)
@@ -99,8 +101,10 @@ def number_text(value: float, sigma: float | None, unit: u.UnitBase | None = Non
     '1.5'
     """
     suffix = "" if unit is None or unit == u.dimensionless_unscaled else f" {unit}"
-    if sigma is None or not math.isfinite(sigma) or sigma <= 0:
+    if sigma is None or sigma == 0:
         return f"{value:.6g}{suffix}"
+    if not math.isfinite(sigma):
+        return f"{value:.6g} ± {sigma}{suffix}"
     decimals = 1 - math.floor(math.log10(float(f"{sigma:.1e}")))
     if -6 < decimals <= 9:
         digits = max(decimals, 0)

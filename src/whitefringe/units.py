@@ -75,8 +75,8 @@ def as_si(value: Any, unit: u.UnitBase, name: str, example: str | None = None) -
     Examples
     --------
     >>> import astropy.units as u
-    >>> as_si(5 * u.um, u.m, "width")
-    5e-06
+    >>> as_si(250 * u.cm, u.m, "width")
+    2.5
     """
     accepted = f"for example 1 {example or unit}"
     quantity = as_quantity(value, name, accepted)
@@ -118,13 +118,21 @@ def as_frequency_si(value: Any, name: str) -> Any:
     """
     accepted = "a vacuum wavelength or a frequency, for example 1.65 um or 182 THz"
     quantity = as_quantity(value, name, accepted)
+    if np.any(quantity.value <= 0):
+        raise InputError(f"{name} must be positive; got {quantity}")
     try:
         result = quantity.to_value(u.Hz, equivalencies=u.spectral())
     except u.UnitConversionError:
         raise UnitsError(f"{name} must be {accepted}; got {quantity.unit}") from None
-    if np.any(result <= 0) or not np.all(np.isfinite(result)):
-        raise InputError(f"{name} must be positive; got {quantity}")
     return float(result) if np.ndim(result) == 0 else np.asarray(result, dtype=float)
+
+
+def one_frequency_si(value: Any, name: str) -> float:
+    """Like `as_frequency_si` for one number."""
+    result = as_frequency_si(value, name)
+    if np.ndim(result) != 0:
+        raise InputError(f"{name} must be one number; got an array of shape {np.shape(result)}")
+    return float(result)
 
 
 def is_length(quantity: u.Quantity) -> bool:

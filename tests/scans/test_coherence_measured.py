@@ -51,8 +51,10 @@ def test_a_gaussian_light(lamp_scan, definition):
 def test_a_gaussian_light_has_no_null(lamp_scan):
     light = spectra.detected(spectra.Flat(), spectra.Gaussian(centre=1.65 * u.um, fwhm=12 * u.THz))
     scan = lamp_scan(np.linspace(-120, 120, 1201), light=light)
-    with pytest.raises(UndefinedWidthError, match="no null with a side lobe beyond it above the noise; use another definition"):
-        reduce_scan(scan, definition="first-null")
+    result = reduce_scan(scan, definition="first-null")
+    assert "no null with a side lobe beyond it above the noise; use another definition" in result.coherence_length
+    assert dict(result.rows)["coherence length"] == result.coherence_length
+    assert result.contrast == reduce_scan(scan).contrast
 
 
 def test_a_packet_that_does_not_fall_to_1_over_e(lamp_scan):

@@ -28,7 +28,7 @@ PM, NM = u.pm, u.nm
         ({"passes": 2, "opd_per_step": 37 * PM}, "opd_per_step is path difference already: leave passes at 1"),
         ({"saturation": 100.0, "dark": 200.0}, r"saturation \(100\) must lie above dark \(200\)"),
         ({"saturation": 0.0}, r"saturation \(0\) must lie above dark \(0\)"),
-        ({"saturation": float("nan")}, "saturation .* must lie above dark"),
+        ({"saturation": float("nan")}, "dark and saturation must be finite numbers of counts"),
         ({"dark": float("nan")}, "dark"),
         ({"dark": float("-inf")}, "dark"),
     ],

@@ -180,5 +180,5 @@ def test_a_masked_whole_number_column_names_its_row(tmp_path):
 
     detector = MaskedColumn(np.arange(40), mask=np.arange(40) == 6)
     Table({"stage": np.arange(40.0), "detector": detector}).write(tmp_path / "masked.fits")
-    with pytest.raises(FileContentError, match=r"data row 7: not a finite number"):
+    with pytest.raises(FileContentError, match=r"data row 7: the entry is missing"):
         read_scan(tmp_path / "masked.fits", ScanLayout(**BY_NAME))

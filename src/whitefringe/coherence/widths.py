@@ -11,7 +11,6 @@ from dataclasses import dataclass, replace
 
 import astropy.units as u
 import numpy as np
-from scipy.optimize import minimize_scalar
 from scipy.special import voigt_profile
 
 from ..errors import InputError, UndefinedWidthError
@@ -19,16 +18,10 @@ from ..results import Measured
 from ..spectra import Line, Spectrum
 from ..spectra.lines import FOUR_LN2
 from ..spectra.measures import half_maximum_edges_si
-from ..units import SPEED_OF_LIGHT, FloatArray
-from .degree import self_coherence_si
+from ..units import SPEED_OF_LIGHT
+from ._search import NULL_DEPTH, first_below, first_null
 
 DEFAULT_DEFINITION = "bandwidth"
-
-NULL_DEPTH = 0.1
-"""A minimum of |gamma| counts as a null when it lies below this."""
-
-FADED = 1e-6
-"""Below this, what is left of |gamma| is rounding and holds no nulls."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -77,74 +70,12 @@ def _overlap_with_continuum(line: Line, spectrum: Spectrum) -> float:
     return float(spectrum.density_si(np.asarray(line.frequency_si)))
 
 
-def _contrast(spectrum: Spectrum, delay: float) -> float:
-    return float(np.abs(self_coherence_si(spectrum, np.array([delay]))[0]))
-
-
-def _scan(spectrum: Spectrum) -> FloatArray:
-    """Delays [s] from zero out, fine enough for the fastest change of |gamma|, as far as it may stay high."""
-    if not spectrum.density.size and all(line.fwhm_si == 0 for line in spectrum.lines) and len(spectrum.lines) == 1:
-        raise UndefinedWidthError("a monochromatic line never loses coherence")
-    widths = [line.fwhm_si for line in spectrum.lines if line.strength > 0]
-    low, high = spectrum.extent_si
-    fast = high - low + max(widths, default=0.0)
-    slow = min([width for width in widths if width > 0], default=fast)
-    first = np.linspace(0, 64 / fast, 1025)
-    if not widths or slow >= fast / 4:
-        return first
-    return np.concatenate([first, np.linspace(64 / fast, max(4 / slow, 65 / fast), 8192)[1:]])
-
-
-def _first_below(spectrum: Spectrum, level: float) -> float:
-    """Smallest delay [s] at which |gamma| has fallen to `level`."""
-    delays = _scan(spectrum)
-    contrast = np.abs(self_coherence_si(spectrum, delays))
-    below = np.flatnonzero(contrast <= level)
-    if below.size == 0:
-        raise UndefinedWidthError(
-            f"the contrast does not fall to {level:.3g} within {delays[-1] * SPEED_OF_LIGHT:.3g} m of path difference: "
-            'ask for definition="power"'
-        )
-    last = int(below[0])
-    return _crossing(spectrum, level, float(delays[last - 1]), float(delays[last]))
-
-
-def _crossing(spectrum: Spectrum, level: float, low: float, high: float) -> float:
-    """Delay in the bracket at which |gamma| falls through `level`: three rounds of 33 equally spaced delays, then a straight line."""
-    for _ in range(3):
-        delays = np.linspace(low, high, 33)
-        contrast = np.abs(self_coherence_si(spectrum, delays))
-        first = int(np.flatnonzero(contrast[1:] <= level)[0]) if np.any(contrast[1:] <= level) else 31
-        low, high = float(delays[first]), float(delays[first + 1])
-        before, after = float(contrast[first]), float(contrast[first + 1])
-    if before == after:
-        return low
-    return low + (high - low) * min(max((before - level) / (before - after), 0.0), 1.0)
-
-
 def _half(spectrum: Spectrum) -> float:
-    return 2.0 * _first_below(spectrum, 0.5)
+    return 2.0 * first_below(spectrum, 0.5)
 
 
 def _e_fold(spectrum: Spectrum) -> float:
-    return _first_below(spectrum, float(np.exp(-1.0)))
-
-
-def _first_null(spectrum: Spectrum) -> float:
-    delays = _scan(spectrum)
-    contrast = np.abs(self_coherence_si(spectrum, delays))
-    inner = contrast[1:-1]
-    dips = np.flatnonzero((inner <= contrast[:-2]) & (inner < contrast[2:])) + 1
-    for dip in dips:
-        if np.max(contrast[dip:]) < FADED:
-            break
-        low, high = delays[dip - 1], delays[dip + 1]
-        found = minimize_scalar(
-            lambda delay: _contrast(spectrum, delay), bounds=(low, high), method="bounded", options={"xatol": 1e-9 * high}
-        )
-        if found.fun < NULL_DEPTH:
-            return float(found.x)
-    raise UndefinedWidthError(f"|gamma| of this light has no null: no minimum below {NULL_DEPTH} before it fades; use another definition")
+    return first_below(spectrum, float(np.exp(-1.0)))
 
 
 COHERENCE_DEFINITIONS: tuple[CoherenceDefinition, ...] = (
@@ -157,7 +88,7 @@ COHERENCE_DEFINITIONS: tuple[CoherenceDefinition, ...] = (
     CoherenceDefinition(
         name="first-null",
         words=f"delay from zero of the first minimum of |gamma| below {NULL_DEPTH}",
-        time_si=_first_null,
+        time_si=first_null,
         citation="goodman",
     ),
 )
@@ -223,4 +154,5 @@ def coherence_length(spectrum: Spectrum, definition: str = DEFAULT_DEFINITION) -
 
 def packet_width(spectrum: Spectrum) -> Measured:
     """Full width of the fringe packet at half contrast, in path difference: the ``half`` coherence length."""
-    return replace(coherence_length(spectrum, "half"), definition="full width of the packet at half its greatest contrast")
+    words = f"full width of the packet at half its greatest contrast, {spectrum.weight}-weighted"
+    return replace(coherence_length(spectrum, "half"), definition=words)

@@ -49,7 +49,7 @@ def predict_packet(light: Spectrum, definition: str = DEFAULT_DEFINITION) -> Pac
     >>> from whitefringe import fringes, spectra
     >>> light = spectra.detected(spectra.Flat(), spectra.TopHat(centre=1.65 * u.um, width=0.3 * u.um))
     >>> print(fringes.predict_packet(light)["packet width"])
-    10.8604 um (full width of the packet at half its greatest contrast)
+    10.8604 um (full width of the packet at half its greatest contrast, photon-weighted)
     """
     if definition not in [item.name for item in COHERENCE_DEFINITIONS]:
         raise InputError(f"definition must be one of {', '.join(item.name for item in COHERENCE_DEFINITIONS)}; got {definition!r}")

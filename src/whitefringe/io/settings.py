@@ -19,7 +19,7 @@ def read_toml(path: str | Path) -> dict[str, Any]:
     """
     path = Path(path)
     try:
-        text = path.read_text(encoding="utf-8")
+        text = path.read_text(encoding="utf-8-sig")
     except FileNotFoundError:
         raise SetupError(f"{path}: no such setup file") from None
     except (OSError, UnicodeDecodeError) as error:

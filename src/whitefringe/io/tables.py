@@ -97,18 +97,43 @@ def _read_fits(path: Path) -> Table:
     from astropy.utils.exceptions import AstropyWarning
 
     try:
-        with warnings.catch_warnings():
+        with path.open("rb") as stream, warnings.catch_warnings():
             warnings.simplefilter("error", AstropyWarning)
-            return Table.read(path, format="fits")
+            warnings.filterwarnings("ignore", category=u.UnitsWarning)
+            warnings.filterwarnings("ignore", message=".*reading in first available table", category=AstropyWarning)
+            table = Table.read(stream, format="fits")
     except (OSError, ValueError, TypeError, IndexError, KeyError, VerifyError, AstropyWarning) as error:
         raise FileContentError(f"{path}: not a readable FITS table, or cut short ({_line(error)})") from None
+    for name in table.colnames:
+        table[name].unit = _fits_unit(table[name].unit)
+        _nan_where_masked(table, name)
+    return _all_numbers(table, path)
+
+
+def _nan_where_masked(table: Table, name: str) -> None:
+    """FITS has no other mark for a number that is not there than NaN; astropy masks it."""
+    column = table[name]
+    if column.dtype.kind == "f" and getattr(column, "mask", None) is not None:
+        table[name] = column.filled(np.nan)
+
+
+def _fits_unit(unit: Any) -> Any:
+    """Accept a unit's name in the plural or in capitals, which the FITS standard does not know but files hold ("angstroms")."""
+    if unit is None or not isinstance(unit, u.UnrecognizedUnit):
+        return unit
+    for spelling in (unit.name.lower().rstrip("s"), unit.name.lower()):
+        try:
+            return u.Unit(spelling)
+        except ValueError:
+            continue
+    return None
 
 
 def _read_ecsv(path: Path) -> Table:
     from astropy.table import Table
 
     try:
-        return _all_numbers(Table.read(path, format="ascii.ecsv"), path)
+        return _all_numbers(Table.read(path.read_text(encoding="utf-8-sig").splitlines(), format="ascii.ecsv"), path)
     except FileContentError:
         raise
     except Exception as error:  # the ECSV reader has no error class of its own
@@ -126,7 +151,10 @@ def _read_csv(path: Path) -> Table:
         found = _NAME_WITH_UNIT.match(column)
         if found:
             table[column].unit = _unit(found["unit"], path, column)
-            table.rename_column(column, found["name"] or column)
+            name = found["name"] or column
+            if name != column and name in table.colnames:
+                raise FileContentError(f"{path}: column {name!r} stands in the header more than once")
+            table.rename_column(column, name)
     return _all_numbers(table, path)
 
 
@@ -152,8 +180,10 @@ def _all_numbers(table: Table, path: Path) -> Table:
     for name in table.colnames:
         column = table[name]
         if column.dtype.kind in "OSU":
-            bad = next((row for row, entry in enumerate(column) if not _is_numeric(str(entry))), 0)
-            raise FileContentError(f"{path}: column {name!r}, data row {bad + 1}: {column[bad]!r} is not a number")
+            bad = next((row for row, entry in enumerate(column) if not _is_numeric(str(entry))), None)
+            if bad is None:
+                raise FileContentError(f"{path}: column {name!r} does not hold one number per row, but text")
+            raise FileContentError(f"{path}: column {name!r}, data row {bad + 1}: {str(column[bad])!r} is not a number")
         if getattr(column, "mask", None) is not None and np.any(column.mask):
             bad = int(np.flatnonzero(column.mask)[0])
             raise FileContentError(f"{path}: column {name!r}, data row {bad + 1}: the entry is missing")
@@ -175,6 +205,8 @@ def write_table(table: Table, path: str | Path, *, overwrite: bool = False) -> P
     path = Path(path)
     if path.exists() and not overwrite:
         raise FileContentError(f"{path}: the file exists; say overwrite=True to replace it")
+    if not path.parent.is_dir():
+        raise FileContentError(f"{path}: there is no folder {path.parent} to write to")
     handle, name = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.", suffix=".ecsv")
     os.close(handle)
     try:

@@ -17,9 +17,9 @@ ONE_SIDED_95 = 1.645
 def missed_contrast(relative: FloatArray) -> float:
     """Contrast that would have been found in 95 % of such scans: an upper limit for the packet that was not.
 
-    A Gaussian packet of full width w and contrast A puts A^2 / (4 s^2) int e^2 dx of power over noise into the band, e its envelope and s the
-    rms noise of a sample; a box of m bins then holds a sum T of mean m + P and variance m + 2 P, and is found when its Chernoff score
-    T - m - m ln(T / m) passes the threshold of `find_band`.
+    A Gaussian packet of full width w and contrast A puts P = A^2 / (4 s^2) int e^2 dx of power over noise into the band, e its envelope
+    and s the rms noise of a sample; a box of m bins then holds a sum T of mean m + P and variance m + 2 P, and is found when its
+    Chernoff score T - m - m ln(T / m) passes the threshold of `find_band`.
 
     Parameters
     ----------

@@ -121,8 +121,8 @@ def _refuse_gaps(scan: Scan, kept: slice, axis: FloatArray) -> None:
     if steps[widest] > WIDEST_GAP * float(np.median(steps)):
         row = kept.start + widest + 1
         raise ScanError(
-            f"{scan.name}: the path jumps by {steps[widest] / np.median(steps):.1f} times its usual step after data row {row}: rows are missing "
-            "there; record the scan again, or cut it so that the packet lies on one side of the gap"
+            f"{scan.name}: the path jumps by {steps[widest] / np.median(steps):.1f} times its usual step after data row {row}: rows are "
+            "missing there; record the scan again, or cut it so that the packet lies on one side of the gap"
         )
 
 

@@ -236,8 +236,8 @@ def _measured(scan: Scan, even: EvenScan, packet: Packet, band: Band, definition
 def _refuse_impossible(scan: Scan, contrast: float, error: float) -> None:
     if contrast - 5 * error > MOST_CONTRAST:
         raise ScanError(
-            f"{scan.name}: the contrast comes out as {contrast:.3g}, which no light can have: the dark level {scan.layout.dark:g} is too high, "
-            "or the lamp flickered in step with the fringes"
+            f"{scan.name}: the contrast comes out as {contrast:.3g}, which no light can have: the dark level {scan.layout.dark:g} is too "
+            "high, or the lamp flickered in step with the fringes"
         )
 
 

@@ -9,10 +9,12 @@ import numpy as np
 from scipy.signal import find_peaks
 from scipy.signal.windows import hann
 
-from ..errors import InputError, NoFringeError
+from ..errors import NoFringeError, ScanError
 from ..results import Measured
 from ..units import STEP, FloatArray, read_only
-from ._band import FEWEST_FRINGES, detrended
+from ._band import FEWEST_FRINGES, detrended, find_band
+from ._lines import separated_lines
+from ._packet import mean_level
 from .conditioning import EvenScan, even_scan
 from .scan import Scan
 
@@ -21,6 +23,11 @@ ZERO_PADDING = 4
 
 FAINTEST_LINE = 0.2
 """Lines are listed down to this fraction of the strongest line's amplitude: below lie window and drive-error side-bands."""
+
+MEAN_SHARE = 1 / 6
+"""The slow mean follows changes up to this fraction of the lowest frequency of the fringes' band."""
+
+METHOD = "greatest of the Hann-windowed spectrum, lines separated; error from white noise alone"
 
 HANN_FREQUENCY_LOSS = 2.02
 """Variance of a line's frequency with a Hann window over that without (asymptotic, from the window's second moments)."""
@@ -64,7 +71,7 @@ class ScanSpectrum:
 def spectrum_from_scan(scan: Scan) -> ScanSpectrum:
     """Compute the amplitude spectrum of a scan on its (rebuilt) path axis.
 
-    Hann window, zero padding by four, line positions by a parabola through the logarithms of the three highest points.
+    Hann window; each line is placed where the windowed spectrum, less the other lines' share of it, is greatest.
 
     Parameters
     ----------
@@ -84,12 +91,12 @@ def spectrum_from_scan(scan: Scan) -> ScanSpectrum:
     Notes
     -----
     Uncertainties are those of a sinusoid in white noise (Kay 1993, ex. 3.14: var f = 12 / [(2 pi)^2 eta N (N^2 - 1)]) times 2.02 for
-    the window. They do not hold errors of the path axis, nor lines that lie closer than the resolution.
+    the window. They do not hold errors of the path axis, which common practice finds to be far greater on a real stage.
     """
     even = even_scan(scan)
     if np.mean(even.signal) <= 0:
-        raise InputError(f"{scan.name}: the mean signal is not above the dark level: relative amplitudes have no meaning")
-    values = detrended(even.axis_si, even.signal) / float(np.mean(even.signal))
+        raise ScanError(f"{scan.name}: the mean signal is not above the dark level: relative amplitudes have no meaning")
+    values = _relative(even)
     window = hann(values.size, sym=False)
     count = ZERO_PADDING * values.size
     amplitude = 2.0 * np.abs(np.fft.rfft(values * window, count)) / float(np.sum(window))
@@ -99,7 +106,9 @@ def spectrum_from_scan(scan: Scan) -> ScanSpectrum:
     if peaks.size == 0:
         limit = float(noise * (np.sqrt(np.log(values.size)) + 1.645))
         raise NoFringeError(f"{scan.name}: no line above the noise; amplitude below {limit:.2g} (95 %)", upper_limit=limit)
-    lines = tuple(_line(even, amplitude, int(peak), grid, noise, values.size) for peak in peaks)
+    starts = peaks * grid * even.step
+    found = separated_lines(values * window, window, starts)
+    lines = tuple(_line(even, frequency / even.step, height, noise, values.size) for frequency, height in found)
     unit = u.um if even.path_known else STEP
     scale = 1e-6 if even.path_known else 1.0
     return ScanSpectrum(
@@ -121,21 +130,26 @@ def _peaks(amplitude: FloatArray, noise: float) -> FloatArray:
     return np.asarray(found[np.argsort(amplitude[found])[::-1]])
 
 
-def _line(even: EvenScan, amplitude: FloatArray, peak: int, grid: float, noise: float, samples: int) -> ScanLine:
-    left, middle, right = np.log(amplitude[peak - 1 : peak + 2])
-    shift = 0.5 * (left - right) / (left - 2 * middle + right)
-    frequency = (peak + float(shift)) * grid
-    height = float(np.exp(middle - 0.25 * (left - right) * shift))
+def _relative(even: EvenScan) -> FloatArray:
+    """Signal over its slow mean, less one; over its overall mean where no fringes are found."""
+    values = detrended(even.axis_si, even.signal)
+    band = find_band(values, even.step)
+    if band is None:
+        return values / float(np.mean(even.signal))
+    mean = mean_level(even.signal, 2.0 * band.first / even.signal.size * MEAN_SHARE)
+    return even.signal / mean - 1.0
+
+
+def _line(even: EvenScan, frequency: float, height: float, noise: float, samples: int) -> ScanLine:
     # noise is the rms of the windowed amplitude: 2 sigma sqrt(1.5 / N), so eta = A^2 / (2 sigma^2) = 3 (A / noise)^2 / N
     eta = 3.0 * (height / noise) ** 2 / samples
     sigma = np.sqrt(HANN_FREQUENCY_LOSS * 12.0 / (eta * samples * (samples**2 - 1.0))) / (2 * np.pi) / even.step
     unit, scale = (u.um, 1e-6) if even.path_known else (STEP, 1.0)
-    method = "peak of the Hann-windowed spectrum"
     where = Measured(
         value=frequency * scale / unit,
         uncertainty=sigma * scale / unit,
         definition="fringe frequency",
-        method=method,
+        method=METHOD,
         citation="kay",
     )
     wave = None
@@ -144,7 +158,7 @@ def _line(even: EvenScan, amplitude: FloatArray, peak: int, grid: float, noise: 
             value=1e9 / frequency * u.nm,
             uncertainty=1e9 * sigma / frequency**2 * u.nm,
             definition="wavelength on the scan's path scale",
-            method=method,
+            method=METHOD,
             citation="kay",
         )
     return ScanLine(frequency=where, wavelength=wave, amplitude=height)
@@ -160,6 +174,6 @@ def _beat(lines: tuple[ScanLine, ...], unit: u.UnitBase) -> Measured | None:
         value=(1 / distance).to(unit),
         uncertainty=(sigma / distance**2).to(unit),
         definition="beat period of the contrast: 1 over the distance of the two strongest lines",
-        method="peak of the Hann-windowed spectrum",
+        method=METHOD,
         citation="kay",
     )

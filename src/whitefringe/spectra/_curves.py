@@ -82,8 +82,8 @@ def prepare_curve(wavelength: Any, values: Any, repair: tuple[str, ...], origin:
     if x.shape != y.shape or x.ndim != 1:
         raise InputError(f"{origin}: wavelength and transmission must be two columns of one length; got {x.shape} and {y.shape}")
     notes: list[str] = []
-    x, y = _finite(x, y, repair, origin, notes)
-    x, y = _ordered(x, y, repair, origin, notes)
+    x, y, rows = _finite(x, y, repair, origin, notes)
+    x, y = _ordered(x, y, rows, repair, origin, notes)
     x, y = _single(x, y, repair, origin, notes)
     y = _not_negative(x, y, repair, origin, notes)
     if x.size < 2 or not np.any(y > 0):
@@ -110,33 +110,36 @@ def _fraction(values: Any, origin: str) -> FloatArray:
         y = np.asarray(quantity.to_value(u.dimensionless_unscaled), dtype=float)
     except u.UnitConversionError:
         raise UnitsError(f"{origin}: transmission must be a fraction or percent; got {quantity.unit}") from None
-    if np.nanmax(y, initial=0.0) > FRACTION_LIMIT:
-        row = int(np.nanargmax(y)) + 1
-        raise UnitsError(
-            f"{origin}: data row {row}: transmission {np.nanmax(y):g} is above 1; if the column is in percent, state it with "
-            "transmission_unit=u.percent, or give the values as a Quantity in percent"
+    highest = np.where(np.isfinite(y), y, 0.0)
+    if np.max(highest, initial=0.0) > FRACTION_LIMIT:
+        row, most = int(np.argmax(highest)) + 1, float(np.max(highest))
+        advice = (
+            "if the column is in percent, state it with transmission_unit=u.percent, or give the values as a Quantity in percent"
+            if quantity.unit == u.dimensionless_unscaled
+            else "no filter passes more light than it gets; correct the table"
         )
+        raise UnitsError(f"{origin}: data row {row}: transmission {most:g} is above 1; {advice}")
     return y
 
 
 def _finite(x: FloatArray, y: FloatArray, repair: tuple[str, ...], origin: str, notes: list[str]) -> Any:
     good = np.isfinite(x) & np.isfinite(y)
     if np.all(good):
-        return x, y
+        return x, y, np.arange(x.size) + 1
     bad = int(np.sum(~good))
     _may(repair, "drop-non-finite", f"{origin}: data row {int(np.argmin(good)) + 1}: not a finite number ({bad} such rows)")
     notes.append(f"drop-non-finite: {bad} rows left out")
-    return x[good], y[good]
+    return x[good], y[good], np.flatnonzero(good) + 1
 
 
-def _ordered(x: FloatArray, y: FloatArray, repair: tuple[str, ...], origin: str, notes: list[str]) -> Any:
+def _ordered(x: FloatArray, y: FloatArray, rows: Any, repair: tuple[str, ...], origin: str, notes: list[str]) -> Any:
     steps = np.diff(x)
     if np.all(steps >= 0):
         return x, y
     if np.all(steps <= 0):
         return x[::-1], y[::-1]
-    turn = int(np.argmax(np.sign(steps) != np.sign(steps[steps != 0][0]))) + 2
-    _may(repair, "sort", f"{origin}: data row {turn}: the wavelengths are neither rising nor falling")
+    turn = int(np.argmax(steps * steps[steps != 0][0] < 0)) + 1
+    _may(repair, "sort", f"{origin}: data row {rows[turn]}: the wavelengths are neither rising nor falling")
     order = np.argsort(x, kind="stable")
     notes.append(f"sort: {x.size} rows put in order")
     return x[order], y[order]

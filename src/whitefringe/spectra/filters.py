@@ -14,10 +14,10 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import InputError
-from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_si, is_length
+from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, is_length, one_frequency_si, positive_si
 from ._curves import REPAIRS, Curve, prepare_curve, read_curve
 from ._parameters import parameter
-from .lines import FOUR_LN2, edges_of, width_si
+from .lines import FOUR_LN2, WIDTHS, edges_of, width_si
 
 _REACH = 3.5
 """A Gaussian is followed to this many full widths from its centre, where 2e-15 of its peak is left."""
@@ -66,11 +66,11 @@ class _Shape:
 
 def _edges_si(centre: Any, width: Any, reach: float = 0.5) -> tuple[float, float]:
     """Frequencies [Hz] at centre -+ reach x width, on the axis (wavelength or frequency) of the width's unit."""
-    centre_si = as_frequency_si(centre, "centre")
-    if is_length(u.Quantity(width)):
-        low, high = edges_of(SPEED_OF_LIGHT / centre_si, 2 * reach * as_si(width, u.m, "width", "nm"), "width")
+    centre_si = one_frequency_si(centre, "centre")
+    if is_length(as_quantity(width, "width", WIDTHS)):
+        low, high = edges_of(SPEED_OF_LIGHT / centre_si, 2 * reach * positive_si(width, u.m, "width", "nm"), "width")
         return SPEED_OF_LIGHT / high, SPEED_OF_LIGHT / low
-    return edges_of(centre_si, 2 * reach * as_si(width, u.Hz, "width", "THz"), "width")
+    return edges_of(centre_si, 2 * reach * positive_si(width, u.Hz, "width", "THz"), "width")
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -129,7 +129,7 @@ class Gaussian(_Shape):
     fwhm: u.Quantity = parameter("full width (FWHM)", u.nm, low=5.0, high=300.0, step=5.0, start=250.0)
 
     def __post_init__(self) -> None:
-        width_si(float(as_frequency_si(self.centre, "centre")), self.fwhm, "fwhm")
+        width_si(one_frequency_si(self.centre, "centre"), self.fwhm, "fwhm")
 
     @cached_property
     def _axis_si(self) -> tuple[bool, float, float]:
@@ -182,12 +182,18 @@ class Tabulated(_Shape):
     shape: ClassVar[str] = "table"
     wavelength: u.Quantity
     transmission_values: Any
-    repair: tuple[str, ...] = ()
+    repair: tuple[str, ...] | str = ()
     origin: str = "table"
     curve: Curve = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
-        curve = prepare_curve(self.wavelength, self.transmission_values, self.repair, self.origin)
+        names = (self.repair,) if isinstance(self.repair, str) else tuple(self.repair)
+        curve = prepare_curve(self.wavelength, self.transmission_values, names, self.origin)
+        for name in ("wavelength", "transmission_values"):
+            copied = u.Quantity(getattr(self, name), dtype=float, copy=True)
+            copied.setflags(write=False)
+            object.__setattr__(self, name, copied)
+        object.__setattr__(self, "repair", names)
         object.__setattr__(self, "curve", curve)
 
     @property
@@ -235,6 +241,10 @@ class Tilted(_Shape):
 
     def __post_init__(self) -> None:
         angle = as_si(self.angle, u.rad, "angle", "deg")
+        if not isinstance(self.filter, Filter) or isinstance(self.filter, type):
+            raise InputError(f"filter must be a filter shape such as spectra.TopHat; got {self.filter!r}")
+        if np.ndim(angle) != 0:
+            raise InputError(f"angle must be one number; got an array of shape {np.shape(angle)}")
         if not 0 <= angle < np.pi / 2:
             raise InputError(f"angle must be from 0 to below 90 deg; got {self.angle}")
         if not self.effective_index > 1:
@@ -298,9 +308,8 @@ def read_filter(
     CurveEndsWarning
         Light may be missing beyond the ends; the message says how much.
     """
-    repairs = (repair,) if isinstance(repair, str) else tuple(repair)
     wavelength, values = read_curve(path, wavelength_unit, transmission_unit, wavelength_column, transmission_column)
-    return Tabulated(wavelength=wavelength, transmission_values=values, repair=repairs, origin=str(path))
+    return Tabulated(wavelength=wavelength, transmission_values=values, repair=repair, origin=str(path))
 
 
 FILTER_SHAPES: tuple[type[Any], ...] = (TopHat, Gaussian, Tabulated)

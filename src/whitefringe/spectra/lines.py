@@ -20,9 +20,11 @@ from scipy.optimize import brentq
 from scipy.special import voigt_profile
 
 from ..errors import InputError
-from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_si, is_length
+from ..units import SPEED_OF_LIGHT, FloatArray, as_quantity, is_length, one_frequency_si, positive_si
 
 FOUR_LN2 = 4.0 * np.log(2.0)
+
+WIDTHS = "a width in wavelength or frequency, for example 10 nm or 5 THz"
 
 LINE_PROFILES = ("monochromatic", "gaussian", "lorentzian", "voigt")
 """Names of the line profiles."""
@@ -90,7 +92,7 @@ class Line:
     @cached_property
     def frequency_si(self) -> float:
         """Centre frequency [Hz]."""
-        return float(as_frequency_si(self.wavelength, "wavelength"))
+        return one_frequency_si(self.wavelength, "wavelength")
 
     @cached_property
     def widths_si(self) -> tuple[float, float]:
@@ -144,20 +146,14 @@ def width_si(centre_si: float, width: Any, name: str) -> float:
 
     A width in wavelength is converted exactly: ``c/(l0 - dl/2) - c/(l0 + dl/2)``.
     """
-    if not is_length(u.Quantity(width)):
-        result = as_si(width, u.Hz, name)
-    else:
-        low, high = edges_of(SPEED_OF_LIGHT / centre_si, as_si(width, u.m, name), name)
-        result = SPEED_OF_LIGHT / low - SPEED_OF_LIGHT / high
-    if result <= 0:
-        raise InputError(f"{name} must be above zero; got {width}")
-    return float(result)
+    if not is_length(as_quantity(width, name, WIDTHS)):
+        return positive_si(width, u.Hz, name, "GHz")
+    low, high = edges_of(SPEED_OF_LIGHT / centre_si, positive_si(width, u.m, name, "nm"), name)
+    return SPEED_OF_LIGHT / low - SPEED_OF_LIGHT / high
 
 
 def edges_of(centre: float, width: float, name: str) -> tuple[float, float]:
     """Return centre -+ width/2, both of which must be above zero."""
-    if width <= 0:
-        raise InputError(f"{name} must be above zero; got {width:g}")
     if width >= 2 * centre:
         raise InputError(f"{name} must be less than twice the centre, or the band reaches zero; got {width / centre:.3g} of it")
     return centre - width / 2, centre + width / 2

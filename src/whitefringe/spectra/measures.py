@@ -5,7 +5,7 @@ from __future__ import annotations
 import astropy.units as u
 import numpy as np
 
-from ..errors import UndefinedWidthError
+from ..errors import InputError, UndefinedWidthError
 from ..results import Measured
 from ..units import SPEED_OF_LIGHT
 from .spectrum import Spectrum
@@ -84,7 +84,7 @@ def full_width_half_maximum(spectrum: Spectrum, axis: str = "frequency") -> Meas
         value = (SPEED_OF_LIGHT / low - SPEED_OF_LIGHT / high) * u.m
         return Measured(value=value.to(u.nm), definition="full width at half maximum, in wavelength", method="linear crossing")
     if axis != "frequency":
-        raise ValueError(f'axis must be "frequency" or "wavelength"; got {axis!r}')
+        raise InputError(f'axis must be "frequency" or "wavelength"; got {axis!r}')
     return Measured(value=((high - low) * u.Hz).to(u.THz), definition="full width at half maximum", method="linear crossing")
 
 

@@ -97,7 +97,7 @@ class Thermal:
 
     @cached_property
     def _scale(self) -> float:
-        """K T / h [Hz]."""
+        """Scale k T / h [Hz] (Boltzmann constant times temperature over Planck constant)."""
         return positive_si(self.temperature, u.K, "temperature") * float(k_B.si.value) / float(h.si.value)
 
     @property

@@ -101,9 +101,11 @@ class Spectrum:
         density : array_like, shape (n,)
         """
         points = np.asarray(as_si(frequency, u.Hz, "frequency", "THz"))
-        steps = np.diff(points)
-        if points.ndim != 1 or points.size < 4 or np.any(steps <= 0):
+        if points.ndim != 1 or points.size < 4 or np.any(np.diff(points) <= 0):
             raise InputError("frequency must be one row of at least 4 rising values")
+        if np.shape(density) != points.shape:
+            raise InputError(f"density must have one value per frequency; got shapes {np.shape(density)} and {points.shape}")
+        steps = np.diff(points)
         step = (points[-1] - points[0]) / (points.size - 1)
         if np.max(np.abs(steps - step)) > 1e-6 * step:
             raise InputError("frequency must be equally spaced; use spectra.Tabulated for a table that is not")
@@ -154,8 +156,17 @@ class Spectrum:
 
     @cached_property
     def slopes(self) -> FloatArray:
-        """Change of the density across each cell: central differences, second-order one-sided ones at the two ends."""
-        return read_only(np.gradient(self.density, edge_order=2) if self.density.size else ())
+        """Change of the density across each cell: central differences, second-order one-sided ones at the two ends.
+
+        Limited to twice the density, so that no piece falls below zero.
+        """
+        free = np.gradient(self.density, edge_order=2) if self.density.size else np.empty(0)
+        return read_only(np.clip(free, -2 * self.density, 2 * self.density))
+
+    @cached_property
+    def slopes_are_central(self) -> bool:
+        """Whether every inner slope is the central difference, none limited."""
+        return bool(np.array_equal(self.slopes[1:-1], 0.5 * (self.density[2:] - self.density[:-2])))
 
     def density_at(self, frequency: Any) -> FloatArray:
         """Continuum density at a frequency or wavelength (Quantity); zero outside the grid. Lines are left out."""
@@ -174,7 +185,9 @@ class Spectrum:
         """Return the light that is left after the filters, on a grid that ends where they end."""
         edges = self.start_si + self.step_si * np.arange(self.density.size + 1)
         continuum = (edges[0], edges[-1]) if self.density.size else (0.0, 0.0)
-        return _compose(self.density_si, continuum, [edges], self.lines, filters, samples or max(self.density.size, 4), self.weight)
+        return _compose(
+            self.density_si, continuum, [edges], self.lines, filters, max(self.density.size, 4) if samples is None else samples, self.weight
+        )
 
     def power_weighted(self) -> Spectrum:
         """Return the same light weighted by energy instead of photons: times nu over the mean frequency.
@@ -212,7 +225,7 @@ def detected(source: Source, *filters: Filter, samples: int = SAMPLES) -> Spectr
     Warns
     -----
     ResolutionWarning
-        A filter changes by more than 1 % of its peak across a line, whose shape then would change.
+        The filters' transmission changes by more than 1 % across a line, whose shape then would change.
 
     Examples
     --------
@@ -223,9 +236,9 @@ def detected(source: Source, *filters: Filter, samples: int = SAMPLES) -> Spectr
     1.63636 um (c / mean frequency, photon-weighted)
     """
     for position, item in enumerate(filters):
-        if not isinstance(item, Filter):
+        if not isinstance(item, Filter) or isinstance(item, type):
             raise InputError(f"filters must be filter shapes such as spectra.TopHat; number {position + 1} is {item!r}")
-    if not isinstance(source, Source):
+    if not isinstance(source, Source) or isinstance(source, type):
         raise InputError(f"source must be one such as spectra.Thermal; got {source!r}")
     kinks = [np.asarray(source.breakpoints_si)]
     return _compose(source.rate_si, source.support_si, kinks, source.lines, filters, samples, "photon")
@@ -249,6 +262,8 @@ def _compose(
         return Spectrum(lines=left, weight=weight)
     if not np.isfinite(high):
         raise InputError("nothing bounds the light: give at least one filter, or a source that ends")
+    if not low < high and left:
+        return Spectrum(lines=left, weight=weight)
     if not low < high:
         raise InputError("no light is left: source and filters have no common band")
 
@@ -272,9 +287,9 @@ def _line_through(line: Line, filters: tuple[Filter, ...]) -> Line:
         low, high = item.support_si
         inside = (points >= low) & (points <= high)
         passed = passed * np.where(inside, item.transmission_si(np.clip(points, low, high)), 0.0)
-    if np.ptp(passed) > 0.01:
+    if np.ptp(passed) > 0.01 * np.max(passed):
         warnings.warn(
-            f"the filters' transmission changes by {np.ptp(passed):.1%} across the line at "
+            f"the filters' transmission changes by {np.ptp(passed) / np.max(passed):.1%} across the line at "
             f"{SPEED_OF_LIGHT / line.frequency_si * 1e9:.6g} nm; only its strength is changed, not its shape",
             ResolutionWarning,
             stacklevel=4,

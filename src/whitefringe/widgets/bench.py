@@ -56,7 +56,7 @@ class Bench:
     >>> from whitefringe import demo, setup
     >>> bench = Bench(setup.Setup(source=demo.LAMP, filters=(demo.bench_filter(),)), demo.bench_scan())
     >>> print(bench.summary())
-    wavelength 1.6393 um, packet width 12.274 um, delay 0.00 um, contrast there 1.0000, verdict outside
+    wavelength 1.6393 um, packet width 12.274 um, delay 0.00 um, contrast there 1.0000, verdict inside
     """
 
     def __init__(self, setup: Setup, scan: Scan | None = None, *, strict: bool | None = None) -> None:

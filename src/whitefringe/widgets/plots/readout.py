@@ -61,9 +61,9 @@ class Readout(BenchView):
         )
 
 
-def _text(number: Measured) -> str:
-    """Value, uncertainty and unit, with a micro sign."""
-    return number.text.replace(" um", " µm")
+def _text(number: Measured | str) -> str:
+    """Value, uncertainty and unit, with a micro sign; or the reason why there is none."""
+    return number if isinstance(number, str) else number.text.replace(" um", " µm")
 
 
 def _row(item: Comparison) -> str:
