@@ -99,7 +99,7 @@ def test_the_generator_decides(light):
     ],
 )
 def test_impossible_settings(light, settings):
-    with pytest.raises(InputError, match="photons_per_sample must be above 0, .* and all finite"):
+    with pytest.raises(InputError, match=r"photons_per_sample must be above 0, .* and all finite"):
         simulate(light, **settings)
 
 
