@@ -80,6 +80,11 @@ class Packet:
         """z(x)."""
         return complex(np.sum(self.coefficients * self.wave(x)))
 
+    @property
+    def shoulder(self) -> float:
+        """Length over which the scan's ends are faded [axis unit]: the packet's half-contrast points must lie inside."""
+        return END_TAPER * self.span / self.frequency.size
+
     @cached_property
     def grid(self) -> tuple[FloatArray, ComplexArray]:
         """Fine axis and z on it."""

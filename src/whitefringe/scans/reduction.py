@@ -16,7 +16,7 @@ from ..units import STEP, FloatArray, read_only
 from ._band import Band, detrended, find_band
 from ._coherence import DEFINITIONS_MEASURED, coherence_measured
 from ._limits import missed_contrast
-from ._packet import END_TAPER, Estimate, Packet, centre_of, crossings_of, packet_in, peak_of
+from ._packet import OVERSAMPLING, Estimate, Packet, centre_of, crossings_of, packet_in, peak_of
 from .conditioning import EvenScan, even_scan
 from .scan import Scan
 from .verdict import Comparison, Outcome, Tolerances, overall
@@ -243,9 +243,8 @@ def _refuse_impossible(scan: Scan, contrast: float, error: float) -> None:
 
 def _clear_of_ends(packet: Packet, halves: tuple[Estimate, Estimate]) -> bool:
     """Tell whether the half-contrast points lie inside the shoulders that fade the scan's ends."""
-    response = END_TAPER * packet.span / packet.frequency.size
     last = packet.origin + packet.span * (1 - 1 / packet.samples)
-    return halves[0].value - packet.origin > response and last - halves[1].value > response
+    return halves[0].value - packet.origin > packet.shoulder and last - halves[1].value > packet.shoulder
 
 
 def _cut_off(scan: Scan, even: EvenScan, packet: Packet, peak: float) -> str:
@@ -253,10 +252,11 @@ def _cut_off(scan: Scan, even: EvenScan, packet: Packet, peak: float) -> str:
     side = "start" if peak - first < last - peak else "end"
     unit = even.unit if not even.path_known else u.um
     where = (np.array([first, last, peak]) * even.unit).to_value(unit)
+    margin = (packet.shoulder * even.unit).to_value(unit)
     return (
-        f"{scan.name}: the packet is cut off: its contrast does not fall to half before the {side} of the scan (which runs from "
-        f"{where[0]:.6g} to {where[1]:.6g} {unit}, greatest contrast at {where[2]:.6g}): move or widen the scan; fringes of one "
-        "strength throughout are those of a sharp line, or no fringes at all"
+        f"{scan.name}: the packet is cut off: its contrast does not fall to half at least {margin:.3g} {unit} before the {side} of the "
+        f"scan (which runs from {where[0]:.6g} to {where[1]:.6g} {unit}, greatest contrast at {where[2]:.6g}): move or widen the scan; "
+        "fringes of one strength throughout are those of a sharp line, or no fringes at all"
     )
 
 
@@ -308,8 +308,6 @@ def _result(
 
 
 def _curves(even: EvenScan, packet: Packet) -> ScanCurves:
-    from ._packet import OVERSAMPLING
-
     _, z = packet.grid
     z = z[::OVERSAMPLING]
     return ScanCurves(
