@@ -7,7 +7,7 @@ from collections.abc import Iterator
 import numpy as np
 from scipy.optimize import minimize_scalar
 
-from ..errors import UndefinedWidthError
+from ..errors import InputError, UndefinedWidthError
 from ..spectra import Spectrum
 from ..units import SPEED_OF_LIGHT, FloatArray
 from .degree import self_coherence_si
@@ -45,18 +45,24 @@ def grid_reach(spectrum: Spectrum) -> float:
     return 0.5 * (1 - 1e-9) / spectrum.step_si if spectrum.density.size else float("inf")
 
 
-def _runs(spectrum: Spectrum) -> Iterator[tuple[FloatArray, FloatArray]]:
-    """Delays and |gamma| from zero outward in stretches that overlap by two points, as far as |gamma| may matter."""
+def runs(spectrum: Spectrum, reach: float | None = None) -> Iterator[tuple[FloatArray, FloatArray]]:
+    """Delays and |gamma| from zero outward in stretches that overlap by two points, to `reach` or as far as |gamma| may matter."""
     widths = [line.fwhm_si for line in spectrum.lines if line.strength > 0]
     low, high = spectrum.extent_si
     fast = high - low + max(widths, default=0.0)
     if fast == 0:
         raise UndefinedWidthError("a monochromatic line never loses coherence")
-    reach = max([64 / fast, *(4 / width for width in widths if width > 0)])
+    step = 1 / (PER_CYCLE * fast)
+    if reach is None:
+        reach = min(max([64 / fast, *(4 / width for width in widths if width > 0)]), MOST_DELAYS * step)
+    elif reach > MOST_DELAYS * step:
+        raise InputError(
+            f"delay_range is too long for this light, whose fastest beat asks for steps of {step * SPEED_OF_LIGHT:.3g} m: "
+            f"at most {MOST_DELAYS * step * SPEED_OF_LIGHT:.3g} m"
+        )
     if not widths:
         reach = min(reach, grid_reach(spectrum))
-    step = 1 / (PER_CYCLE * fast)
-    most = min(int(reach / step) + 1, MOST_DELAYS)
+    most = int(reach / step) + 1
     first, length = 0, 1025
     while first < most:
         delays = np.asarray(np.arange(first, min(first + length, most + 2)) * step, dtype=float)
@@ -73,7 +79,7 @@ def first_below(spectrum: Spectrum, level: float) -> float:
         It does not, as far as the search goes.
     """
     last = 0.0
-    for delays, contrast in _runs(spectrum):
+    for delays, contrast in runs(spectrum):
         below = np.flatnonzero(contrast <= level)
         end = int(below[0]) if below.size else delays.size - 1
         touching = _dip_below(spectrum, level, delays[: end + 1], contrast[: end + 1])
@@ -120,7 +126,7 @@ def first_null(spectrum: Spectrum) -> float:
     UndefinedWidthError
         There is none before |gamma| fades.
     """
-    for delays, contrast in _runs(spectrum):
+    for delays, contrast in runs(spectrum):
         inner = contrast[1:-1]
         for dip in np.flatnonzero((inner <= contrast[:-2]) & (inner < contrast[2:])) + 1:
             if np.max(contrast[dip:]) < FADED:

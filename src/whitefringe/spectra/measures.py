@@ -33,6 +33,71 @@ def mean_wavelength(spectrum: Spectrum) -> Measured:
     return Measured(value=value, definition=f"c / mean frequency, {spectrum.weight}-weighted", method="sum over cells")
 
 
+def _mean_of(spectrum: Spectrum, power: int) -> float:
+    """Photon-weighted mean of nu^power: each cell by three Gauss-Legendre nodes of its linear piece, lines at their centres."""
+    nodes, weights = np.polynomial.legendre.leggauss(3)
+    total = sum(line.strength * line.frequency_si**power for line in spectrum.lines)
+    if spectrum.density.size:
+        for node, weight in zip(nodes, weights, strict=True):
+            rate = spectrum.density + 0.5 * node * spectrum.slopes
+            frequency = spectrum.frequency_si + 0.5 * node * spectrum.step_si
+            total += 0.5 * weight * spectrum.step_si * float(np.sum(rate * frequency**power))
+    return float(total) / spectrum.total_rate
+
+
+def effective_wavelength(spectrum: Spectrum) -> Measured:
+    """Effective wavelength: the mean vacuum wavelength of the counted photons, int lambda N dlambda / int N dlambda.
+
+    With photon rate per wavelength N = lambda F R for a source of energy flux F and a photon response R this is
+    int lambda^2 F R dlambda / int lambda F R dlambda.
+
+    References
+    ----------
+    Tokunaga & Vacca, PASP 117, 421 (2005), appendix, doi:10.1086/429382.
+    """
+    value = SPEED_OF_LIGHT * _mean_of(spectrum, -1) * u.m
+    words = f"effective wavelength: mean wavelength, {spectrum.weight}-weighted"
+    return Measured(value=value.to(u.um), definition=words, method="sum over cells", citation="tokunaga-vacca")
+
+
+def pivot_wavelength(spectrum: Spectrum) -> Measured:
+    """Pivot wavelength: sqrt(<lambda> / <1 / lambda>) over the counted photons.
+
+    For a source of the same photon rate at every wavelength (``Flat(per="wavelength")``) and a photon response R this is the filter's
+    own sqrt(int lambda R dlambda / int (R / lambda) dlambda).
+
+    References
+    ----------
+    Tokunaga & Vacca, PASP 117, 421 (2005), appendix, doi:10.1086/429382.
+    """
+    value = SPEED_OF_LIGHT * np.sqrt(_mean_of(spectrum, -1) / _mean_of(spectrum, 1)) * u.m
+    words = f"pivot wavelength: root of mean wavelength over mean inverse wavelength, {spectrum.weight}-weighted"
+    return Measured(value=value.to(u.um), definition=words, method="sum over cells", citation="tokunaga-vacca")
+
+
+def rms_width(spectrum: Spectrum) -> Measured:
+    """Root-mean-square width in frequency: sqrt(<nu^2> - <nu>^2); the curvature of |gamma| at zero delay is -(2 pi rms)^2.
+
+    References
+    ----------
+    Mandel & Wolf, sec. 4.3.3; the relation to |gamma| is the second derivative of the Fourier integral.
+
+    Raises
+    ------
+    UndefinedWidthError
+        A Lorentzian or Voigt line has no mean square width.
+    """
+    if any(line.widths_si[1] > 0 for line in spectrum.lines):
+        raise UndefinedWidthError("a line with Lorentzian wings has no root-mean-square width; ask for the full width instead")
+    mean = mean_frequency_si(spectrum)
+    inside = spectrum.step_si * np.sum(spectrum.density * ((spectrum.frequency_si - mean) ** 2 + spectrum.step_si**2 / 12))
+    inside += spectrum.step_si**2 / 6 * np.sum(spectrum.slopes * (spectrum.frequency_si - mean))
+    lines = sum(line.strength * ((line.frequency_si - mean) ** 2 + line.widths_si[0] ** 2 / (8 * np.log(2))) for line in spectrum.lines)
+    value = np.sqrt((float(inside) + lines) / spectrum.total_rate) * u.Hz
+    words = f"root-mean-square width, {spectrum.weight}-weighted"
+    return Measured(value=value.to(u.THz), definition=words, method="sum over cells", citation="mandel-wolf")
+
+
 def half_maximum_edges_si(spectrum: Spectrum) -> tuple[float, float]:
     """Outermost frequencies [Hz] at which the density is half its maximum.
 
