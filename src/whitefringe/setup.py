@@ -68,6 +68,10 @@ _Unit = Annotated[Any, BeforeValidator(_unit)]
 _Limits = Annotated[tuple[float, float] | None, BeforeValidator(lambda value: None if value == "none" else value)]
 
 
+MOST_CHANNELS = 200
+"""Channels that a setup may ask for."""
+
+
 class _Entry(BaseModel):
     model_config = ConfigDict(extra="forbid", arbitrary_types_allowed=True, strict=False)
 
@@ -84,6 +88,7 @@ class _TableEntry(_Entry):
 class _PredictionEntry(_Entry):
     contrast: float = Field(default=1.0, gt=0, le=1)
     coherence_length: str = DEFAULT_DEFINITION
+    channels: int = Field(default=0, ge=0, le=MOST_CHANNELS)
 
 
 class _SetupEntry(_Entry):
@@ -125,6 +130,8 @@ class Setup:
         Definition of the coherence length in tables.
     delay : Quantity [length]
         Where panels put their delay cursor.
+    channels : int
+        Spectral channels that the band is split into; 0 for none.
     name, origin : str
     """
 
@@ -135,6 +142,7 @@ class Setup:
     expected_contrast: float = 1.0
     definition: str = DEFAULT_DEFINITION
     delay: u.Quantity = 0.0 * u.um
+    channels: int = 0
     name: str = "bench"
     origin: str = ""
 
@@ -144,6 +152,8 @@ class Setup:
         if not isinstance(self.layout, ScanLayout) or not isinstance(self.tolerances, Tolerances):
             raise InputError("layout must be a scans.ScanLayout and tolerances a scans.Tolerances")
         as_si(self.delay, u.m, "delay", "um")
+        if isinstance(self.channels, bool) or not isinstance(self.channels, int) or not 0 <= self.channels <= MOST_CHANNELS:
+            raise InputError(f"channels must be a whole number from 0 to {MOST_CHANNELS}; got {self.channels!r}")
         names = [item.name for item in COHERENCE_DEFINITIONS]
         if self.definition not in names:
             raise InputError(f"definition must be one of {', '.join(names)}; got {self.definition!r}")
@@ -174,6 +184,7 @@ class Setup:
                 layout=_built(ScanLayout, entry.scan, path, "scan"),
                 tolerances=_built(Tolerances, entry.tolerances, path, "tolerances"),
                 expected_contrast=entry.prediction.contrast,
+                channels=entry.prediction.channels,
                 definition=_definition(entry.prediction.coherence_length, path),
                 name=entry.name,
                 origin=str(path),

@@ -1,18 +1,21 @@
 """Jupyter widgets: controls and plots that share a `Bench`, and panels made of them."""
 
 from .bench import Bench, BenchResults
-from .controls import DelayControl, FilterControl, SourceControl
+from .controls import ChannelControl, DelayControl, FilterControl, SourceControl
 from .panels import BenchPanel
-from .plots import PacketPlot, Readout, ScanPlot
+from .plots import FalsePacketTable, PacketPlot, Readout, ScanPlot, SpectrumPlot
 
 __all__ = [
     "Bench",
     "BenchPanel",
     "BenchResults",
+    "ChannelControl",
     "DelayControl",
+    "FalsePacketTable",
     "FilterControl",
     "PacketPlot",
     "Readout",
     "ScanPlot",
     "SourceControl",
+    "SpectrumPlot",
 ]

@@ -11,6 +11,8 @@ from numpy.typing import NDArray
 
 from .._style import FIGURE_MARGIN
 
+FloatArray = NDArray[np.float64]
+
 
 def figure(marks: list[Any], x: Any, y: Any, x_label: str, y_label: str, height: int, y_ticks: list[float]) -> bqplot.Figure:
     """Return a figure of lines on two shared scales; ticks on the second where they are told."""
