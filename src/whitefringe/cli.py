@@ -1,4 +1,4 @@
-"""The command line: ``whitefringe measure``, ``predict`` and ``demo``.
+"""The command line: ``whitefringe measure``, ``predict``, ``light`` and ``demo``.
 
 Exit status: 0 within tolerance, 1 outside, 2 bad usage or input, 3 undecided or not measured.
 """
@@ -19,12 +19,13 @@ from rich.table import Table
 from rich.text import Text
 
 from . import __version__
-from .errors import NoFringeError, ScanError, ScanLayoutError, UndefinedWidthError, WhitefringeError, WhitefringeWarning
+from .errors import InputError, NoFringeError, ScanError, ScanLayoutError, UndefinedWidthError, WhitefringeError, WhitefringeWarning
 from .results import Measured
 
 EXIT = {"inside": 0, "outside": 1, "undecided": 3, "not measured": 3}
 BAD_INPUT = 2
 NOT_MEASURED = 3
+MOST_PACKETS = 20
 STYLES = {"inside": "green", "outside": "bold red", "undecided": "yellow", "not measured": "yellow"}
 
 
@@ -78,7 +79,12 @@ def _parser() -> argparse.ArgumentParser:
     measure.set_defaults(run=_measure)
     predict = commands.add_parser("predict", help="print the numbers of the packet that the setup predicts")
     predict.set_defaults(run=_predict)
-    for command in (measure, predict):
+    light = commands.add_parser("light", help="list what is known of the light: measures, coherence lengths, false packets")
+    light.add_argument("--range", metavar="LENGTH", help='search false packets up to this path difference, such as "1 m"')
+    light.add_argument("--above", metavar="CONTRAST", type=float, default=0.05, help="least height of a false packet (0.05)")
+    light.add_argument("--plot", metavar="FILE", help="draw spectrum and packet to a .png, .svg or .pdf file")
+    light.set_defaults(run=_light)
+    for command in (measure, predict, light):
         command.add_argument("--setup", metavar="FILE", required=True, help="setup file (TOML)")
         command.add_argument("--json", action="store_true", help="print JSON for machines")
     demo = commands.add_parser("demo", help="write the invented Larkmoor bench: setup, filter curve and scans")
@@ -126,6 +132,61 @@ def _predict(options: argparse.Namespace) -> int:
     else:
         Console(markup=False, emoji=False, highlight=False).print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
     return 0
+
+
+def _light(options: argparse.Namespace) -> int:
+    import astropy.units as u
+
+    from .coherence import false_packets
+    from .fringes import describe_light
+    from .setup import Setup, caution_of
+
+    setup = Setup.read(options.setup)
+    rows = describe_light(setup.light, setup.definition)
+    reach = _length(options.range) if options.range else _usual_reach(rows) * u.um
+    packets = false_packets(setup.light, reach, options.above)
+    if options.plot:
+        from .pictures import draw_light
+
+        draw_light(setup, options.plot, min(float(reach.to_value(u.um)), _usual_reach(rows)))
+    if options.json:
+        found = [{"opd": float(p.opd.to_value(u.um)), "unit": "um", "contrast": p.height} for p in packets]
+        numbers = {name: _json_of(value) for name, value in rows}
+        print(json.dumps({"setup": setup.name, "light": numbers, "false_packets": found, "caution": caution_of(setup)}, indent=2))
+        return 0
+    console = Console(markup=False, emoji=False, highlight=False)
+    console.print(_results_table(f"light: {setup.name}", rows))
+    console.print(f"false packets up to {reach:.6g} either way, contrast above {options.above:g}:")
+    console.print(_packets_table(packets))
+    if caution_of(setup):
+        console.print(Text(caution_of(setup), style="bold yellow"), soft_wrap=True)
+    return 0
+
+
+def _length(text: str) -> Any:
+    import astropy.units as u
+
+    try:
+        return u.Quantity(text).to(u.um)
+    except (TypeError, ValueError):
+        raise InputError(f'--range must be a length such as "1 m"; got {text!r}') from None
+
+
+def _usual_reach(rows: Sequence[tuple[str, Measured | str]]) -> float:
+    """Five packet widths [um]; for light that has none, 1 mm."""
+    width = dict(rows)["packet width"]
+    return 1000.0 if isinstance(width, str) else 5 * float(width.value.value)
+
+
+def _packets_table(packets: Sequence[Any]) -> Table:
+    table = Table()
+    table.add_column("path difference", justify="right")
+    table.add_column("contrast", justify="right")
+    for packet in sorted(packets, key=lambda packet: -packet.height)[:MOST_PACKETS]:
+        table.add_row(f"{packet.opd:.6g}", f"{packet.height:.4f}")
+    if len(packets) > MOST_PACKETS:
+        table.caption = f"the {MOST_PACKETS} highest of {len(packets)}; --json lists all"
+    return table
 
 
 def _demo(options: argparse.Namespace) -> int:

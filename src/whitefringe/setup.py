@@ -191,6 +191,11 @@ class Setup:
             )
 
 
+def caution_of(setup: Setup) -> str:
+    """Return the caution line of a source that can hurt, or nothing. Nothing is classified here."""
+    return str(getattr(setup.source, "caution", ""))
+
+
 def _tuple(value: Any) -> tuple[Any, ...]:
     return value if isinstance(value, tuple) else (value, None)
 

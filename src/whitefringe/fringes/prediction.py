@@ -6,10 +6,19 @@ from dataclasses import dataclass
 
 import astropy.units as u
 
-from ..coherence import COHERENCE_DEFINITIONS, DEFAULT_DEFINITION, coherence_length, packet_width
+from ..coherence import COHERENCE_DEFINITIONS, DEFAULT_DEFINITION, coherence_length, delay_for_contrast, packet_width
 from ..errors import InputError, UndefinedWidthError
 from ..results import Measured
-from ..spectra import Spectrum, equivalent_width, full_width_half_maximum, mean_wavelength, resolving_power
+from ..spectra import (
+    Spectrum,
+    effective_wavelength,
+    equivalent_width,
+    full_width_half_maximum,
+    mean_wavelength,
+    pivot_wavelength,
+    resolving_power,
+    rms_width,
+)
 
 SAMPLES_PER_FRINGE = 4
 """A scan needs at least this many samples per fringe to be reduced."""
@@ -70,6 +79,29 @@ def predict_packet(light: Spectrum, definition: str = DEFAULT_DEFINITION) -> Pac
     step = (wavelength.value / SAMPLES_PER_FRINGE).to(u.nm)
     rows.append(("longest step", Measured(value=step, definition=f"path difference, {SAMPLES_PER_FRINGE} samples per fringe")))
     return PacketPrediction(rows=tuple(rows))
+
+
+def describe_light(light: Spectrum, definition: str = DEFAULT_DEFINITION) -> tuple[tuple[str, Measured | str], ...]:
+    """List everything that is known of a light: wavelengths, widths, coherence lengths, how far 80 % and 50 % of contrast hold.
+
+    Parameters
+    ----------
+    light : Spectrum
+    definition : str
+        Definition of the coherence length that comes first; the others follow.
+
+    Returns
+    -------
+    tuple of (name, Measured or reason)
+    """
+    more = (
+        ("effective wavelength", effective_wavelength),
+        ("pivot wavelength", pivot_wavelength),
+        ("rms width", rms_width),
+        ("contrast 0.8 held to", lambda s: delay_for_contrast(s, 0.8)),
+        ("contrast 0.5 held to", lambda s: delay_for_contrast(s, 0.5)),
+    )
+    return (*predict_packet(light, definition).rows, *((name, _or_reason(measure, light)) for name, measure in more))
 
 
 def _in_fringes(width: Measured, wavelength: Measured) -> Measured:
