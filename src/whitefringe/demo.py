@@ -13,7 +13,7 @@ import numpy as np
 
 from .errors import FileContentError
 from .fringes import simulate_lamp_scan
-from .io import write_table
+from .io import write_table, write_text
 from .scans import Scan, ScanLayout
 from .spectra import Filter, Tabulated, Thermal, Tilted, detected
 
@@ -135,5 +135,5 @@ def write_bench(folder: str | Path, *, overwrite: bool = False) -> tuple[Path, .
             meta={"description": f"Larkmoor lamp bench, {what}; {scan.provenance['origin']}"},
         )
         write_table(table, path, overwrite=overwrite)
-    paths[0].write_text(SETUP_TEXT, encoding="utf-8")
+    write_text(SETUP_TEXT, paths[0], overwrite=overwrite)
     return paths

@@ -3,7 +3,7 @@
 import pytest
 
 from whitefringe.errors import SetupError
-from whitefringe.io import read_toml
+from whitefringe.io import read_toml, toml_text, write_text
 
 
 @pytest.mark.parametrize("text", ["[source]\nshape = 'flat'\nn = 3\n", "\ufeff[source]\r\nshape = 'flat'\r\nn = 3\r\n"])
@@ -44,3 +44,34 @@ def test_what_is_not_toml(tmp_path, content, message):
     path.write_bytes(content)
     with pytest.raises(SetupError, match=rf"bench\.toml: {message}"):
         read_toml(path)
+
+
+ENTRIES = {
+    "name": 'a "quoted" name, µ and \\',
+    "count": 3,
+    "share": 0.1,
+    "on": True,
+    "limits": [0.9, 1.1],
+    "source": {"shape": "lines", "lines": [{"wavelength": "500 nm"}, {"wavelength": "501 nm", "strength": 0.5}]},
+    "filter": [{"shape": "table", "repair": ["sort"]}, {"shape": "top-hat"}],
+}
+
+
+def test_what_is_written_is_read_again(tmp_path):
+    path = write_text(toml_text(ENTRIES), tmp_path / "made.toml")
+    assert read_toml(path) == ENTRIES
+
+
+def test_no_toml_for_other_things():
+    with pytest.raises(TypeError, match="no TOML for None"):
+        toml_text({"nothing": None})
+
+
+def test_text_files_are_kept_unless_told(tmp_path):
+    path = write_text("a = 1", tmp_path / "kept.toml")
+    with pytest.raises(SetupError, match=r"kept\.toml: the file exists; say overwrite=True"):
+        write_text("a = 2", path)
+    assert read_toml(write_text("a = 2", path, overwrite=True)) == {"a": 2}
+    with pytest.raises(SetupError, match="there is no folder"):
+        write_text("a = 3", tmp_path / "none" / "x.toml")
+    assert [item.name for item in tmp_path.iterdir()] == ["kept.toml"]

@@ -7,9 +7,7 @@ The format is told by the file's name and first line; units come from the header
 from __future__ import annotations
 
 import hashlib
-import os
 import re
-import tempfile
 import warnings
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -18,6 +16,7 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import FileContentError
+from ._atomic import atomic
 
 if TYPE_CHECKING:
     from astropy.table import Table
@@ -207,17 +206,8 @@ def write_table(table: Table, path: str | Path, *, overwrite: bool = False) -> P
         raise FileContentError(f"{path}: the file exists; say overwrite=True to replace it")
     if not path.parent.is_dir():
         raise FileContentError(f"{path}: there is no folder {path.parent} to write to")
-    handle, name = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.", suffix=".ecsv")
-    os.close(handle)
-    try:
-        table.write(name, format="ascii.ecsv", overwrite=True)
-        umask = os.umask(0)
-        os.umask(umask)
-        os.chmod(name, 0o666 & ~umask)
-        os.replace(name, path)
-    except BaseException:
-        Path(name).unlink(missing_ok=True)
-        raise
+    with atomic(path) as part:
+        table.write(part, format="ascii.ecsv", overwrite=True)
     return path
 
 
