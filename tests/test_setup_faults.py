@@ -54,12 +54,12 @@ FAULTS = {
     "not finite": (GOOD.replace("2900 K", "nan K"), "source: temperature must be finite"),
     "unknown source": (
         '[source]\nshape = "candle"\n',
-        "source.shape: must be one of flat, thermal, diode, lines; got 'candle'",
+        "source.shape: must be one of flat, thermal, diode, lines, single-mode-laser, .*; got 'candle'",
     ),
     "no shape": ('[source]\ntemperature = "2900 K"\n', "source.shape: must be one of .*; got None"),
     "unknown filter": (
         LAMP + '[[filter]]\nshape = "round"\n',
-        r"filter\[0\].shape: must be one of top-hat, gaussian, table",
+        r"filter\[0\].shape: must be one of top-hat, gaussian, super-gaussian, trapezoid, .*, table",
     ),
     "one filter as table": (LAMP + '[filter]\nshape = "gaussian"\n', "filter: Input should be a valid list"),
     "source as text": ('source = "lamp"\n', "source: Input should be a valid dictionary"),

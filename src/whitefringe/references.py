@@ -22,7 +22,7 @@ CITATIONS: dict[str, Citation] = {
     "planck": Citation("Planck's law; constants CODATA 2018 as in astropy.constants", "doi:10.1103/RevModPhys.93.025010"),
     "tokunaga-vacca": Citation("Tokunaga & Vacca, PASP 117, 421 (2005), appendix", "doi:10.1086/429382"),
     "bracewell": Citation(
-        "Bracewell, The Fourier Transform and Its Applications, 3rd ed. (McGraw-Hill 2000), ch. 12 and 13",
+        "Bracewell, The Fourier Transform and Its Applications, 3rd ed. (McGraw-Hill 2000), ch. 8 and 11",
         "ISBN 978-0-07-303938-1",
     ),
     "rabiner": Citation(
@@ -30,12 +30,29 @@ CITATIONS: dict[str, Citation] = {
         "doi:10.1109/TAU.1969.1162034",
     ),
     "kay": Citation(
-        "Kay, Fundamentals of Statistical Signal Processing: Estimation Theory (Prentice Hall 1993), ex. 3.14, ch. 7",
+        "Kay, Fundamentals of Statistical Signal Processing: Estimation Theory (Prentice Hall 1993), ch. 3",
         "ISBN 978-0-13-345711-7",
     ),
     "takeda": Citation("Takeda, Ina & Kobayashi, JOSA 72, 156 (1982), eqs 5-9", "doi:10.1364/JOSA.72.000156"),
+    "ciddor": Citation("Ciddor, Appl. Opt. 35, 1566 (1996), eq. 1", "doi:10.1364/AO.35.001566"),
+    "siegman": Citation("Siegman, Lasers (University Science Books 1986), axial modes; super-Gaussian profiles", "ISBN 978-0-935702-11-8"),
+    "demtroeder": Citation(
+        "Demtroeder, Laser Spectroscopy 1, 5th ed. (Springer 2014), ch. 3: widths and profiles of spectral lines",
+        "doi:10.1007/978-3-642-53859-9",
+    ),
+    "nist-asd": Citation("NIST Atomic Spectra Database, lines of neutral Hg, Ne, Kr, Cd", "doi:10.18434/T4W30F"),
     "effective-index": Citation(
         "Macleod, Thin-Film Optical Filters, 4th ed. (CRC 2010), tilted narrow-band filters", "ISBN 978-1-4200-7302-7"
+    ),
+    "bartlett": Citation(
+        "Bartlett, On the theoretical specification and sampling properties of autocorrelated time-series, "
+        "J. R. Stat. Soc. Suppl. 8, 27 (1946)",
+        "doi:10.2307/2983611",
+    ),
+    "knapp-carter": Citation("Knapp & Carter, IEEE Trans. Acoust. Speech Signal Process. 24, 320 (1976)", "doi:10.1109/TASSP.1976.1162830"),
+    "jackknife": Citation("Miller, The jackknife - a review, Biometrika 61, 1 (1974)", "doi:10.1093/biomet/61.1.1"),
+    "rice": Citation(
+        "Rice, Mathematical analysis of random noise, Bell Syst. Tech. J. 23, 282 (1944), part I", "doi:10.1002/j.1538-7305.1944.tb00874.x"
     ),
 }
 """Key -> citation. Edition and section numbers of the books are from memory, the DOIs of the papers too."""

@@ -21,7 +21,10 @@
     [tolerances]
     contrast = [0.9, 1.1]
 
-A tolerance of ``"none"`` is not judged. Numbers with a unit are written as text, ``"2900 K"``. Files are looked for beside the setup file.
+Any filter may also have ``tilt``, ``effective_index``, ``f_number``, ``obstruction``, ``warmed_by``, ``drift``, ``leak``, ``leak_low``,
+``leak_high`` (see `spectra.in_beam`). A tolerance of ``"none"`` is not judged. Numbers with a unit are written as text, ``"2900 K"``.
+Files are looked for beside the setup file. A source of ``shape = "sum"`` has its parts as ``[[source.sources]]``; an emissivity or a
+reflectivity may be a file, ``{ file = "grey.csv" }``.
 """
 
 from __future__ import annotations
@@ -29,7 +32,7 @@ from __future__ import annotations
 from dataclasses import MISSING, dataclass, field, fields
 from functools import cached_property
 from pathlib import Path
-from typing import Annotated, Any, get_type_hints
+from typing import Annotated, Any, Literal, get_type_hints
 
 import astropy.units as u
 from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError, create_model
@@ -38,7 +41,23 @@ from .coherence import COHERENCE_DEFINITIONS, DEFAULT_DEFINITION
 from .errors import InputError, SetupError, WhitefringeError
 from .io import read_toml
 from .scans import ScanLayout, Tolerances
-from .spectra import FILTER_SHAPES, SOURCE_SHAPES, Filter, Line, Lines, Source, Spectrum, Tabulated, detected, read_filter
+from .spectra import (
+    FILTER_SHAPES,
+    SOURCE_SHAPES,
+    TRAIN_SHAPES,
+    Filter,
+    Line,
+    Lines,
+    Source,
+    Spectrum,
+    Tabulated,
+    TabulatedSource,
+    Together,
+    WavelengthTable,
+    detected,
+    in_beam,
+    read_filter,
+)
 from .units import as_si
 
 
@@ -56,6 +75,16 @@ def _quantity(value: Any) -> Any:
     return quantity
 
 
+def _quantities(value: Any) -> Any:
+    return tuple(_quantity(item) for item in value) if isinstance(value, (list, tuple)) else _quantity(value)
+
+
+def _number_or_table(value: Any) -> Any:
+    if isinstance(value, WavelengthTable) or (isinstance(value, (int, float)) and not isinstance(value, bool)):
+        return value
+    raise ValueError(f'must be a number, or a table such as {{ file = "curve.csv" }}; got {value!r}')
+
+
 def _unit(value: Any) -> Any:
     try:
         return u.Unit(value)
@@ -64,6 +93,8 @@ def _unit(value: Any) -> Any:
 
 
 _Quantity = Annotated[Any, BeforeValidator(_quantity)]
+_Quantities = Annotated[Any, BeforeValidator(_quantities)]
+_NumberOrTable = Annotated[Any, BeforeValidator(_number_or_table)]
 _Unit = Annotated[Any, BeforeValidator(_unit)]
 _Limits = Annotated[tuple[float, float] | None, BeforeValidator(lambda value: None if value == "none" else value)]
 
@@ -83,6 +114,43 @@ class _TableEntry(_Entry):
     wavelength_column: str | int = 0
     transmission_column: str | int = 1
     repair: list[str] = Field(default_factory=list)
+    medium: str | None = None
+
+
+class _BeamEntry(_Entry):
+    """What may happen to any filter in the beam: the arguments of `spectra.in_beam`."""
+
+    tilt: _Quantity = None
+    effective_index: float | None = None
+    f_number: float | None = None
+    obstruction: float | None = None
+    warmed_by: _Quantity = None
+    drift: _Quantity = None
+    leak: float | None = None
+    leak_low: _Quantity = None
+    leak_high: _Quantity = None
+
+
+class _ValuesEntry(_Entry):
+    """A file of wavelengths and values, for an emissivity, a reflectivity or the like."""
+
+    file: str
+    wavelength_unit: _Unit = None
+    value_unit: _Unit = None
+    wavelength_column: str | int = 0
+    value_column: str | int = 1
+    medium: str | None = None
+
+
+class _SourceTableEntry(_ValuesEntry):
+    quantity: Literal["photons", "power"]
+    per: Literal["wavelength", "hertz"]
+    repair: list[str] = Field(default_factory=list)
+
+
+class _SumEntry(_Entry):
+    sources: list[dict[str, Any]] = Field(min_length=1)
+    weights: list[float] | None = None
 
 
 class _PredictionEntry(_Entry):
@@ -106,7 +174,12 @@ def _entry_for(cls: type[Any]) -> type[BaseModel]:
     entries: dict[str, Any] = {}
     for item in fields(cls):
         kind = hints[item.name]
-        if kind is u.Quantity or u.Quantity in getattr(kind, "__args__", ()):
+        members = getattr(kind, "__args__", ())
+        if WavelengthTable in members:
+            kind = _NumberOrTable
+        elif tuple[u.Quantity, ...] in members:
+            kind = _Quantities
+        elif kind is u.Quantity or u.Quantity in members:
             kind = _Quantity
         elif kind == tuple[float, float] | None:
             kind = _Limits
@@ -190,6 +263,12 @@ class Setup:
                 origin=str(path),
             )
 
+    def write(self, path: str | Path, *, overwrite: bool = False) -> tuple[Path, ...]:
+        """Write a setup file that `read` reads again, tables as ECSV files beside it; see `setup_writer.write_setup`."""
+        from .setup_writer import write_setup
+
+        return write_setup(self, path, overwrite=overwrite)
+
 
 def caution_of(setup: Setup) -> str:
     """Return the caution line of a source that can hurt, or nothing. Nothing is classified here."""
@@ -244,26 +323,59 @@ def _without_shape(raw: dict[str, Any]) -> dict[str, Any]:
     return {name: value for name, value in raw.items() if name != "shape"}
 
 
-def _source(raw: dict[str, Any], path: Path) -> Source:
-    cls, rest = _member(SOURCE_SHAPES, raw, path, "source"), _without_shape(raw)
-    if cls is not Lines:
-        return _built(cls, rest, path, "source")  # type: ignore[no-any-return]
+def _with_tables(cls: type[Any], raw: dict[str, Any], path: Path, key: str) -> dict[str, Any]:
+    """Read the files that stand for tables, such as ``reflectivity = { file = "silver.csv" }``."""
+    hints = get_type_hints(cls)
+    found = dict(raw)
+    for name, value in raw.items():
+        if isinstance(value, dict) and WavelengthTable in getattr(hints.get(name), "__args__", ()):
+            found[name] = _read(WavelengthTable.read, _ValuesEntry, value, path, f"{key}.{name}")
+    return found
+
+
+def _read(reader: Any, model: type[BaseModel], raw: dict[str, Any], path: Path, key: str) -> Any:
+    """Check the entry of a file that lies beside the setup file, and read it."""
+    entry = _checked(model, raw, path, key)
+    options: dict[str, Any] = {name: getattr(entry, name) for name in model.model_fields if name != "file"}
+    if "repair" in options:
+        options["repair"] = tuple(options["repair"])
+    with _KeyPath(path, f"{key}.file"):
+        return reader(path.parent / entry.file, **options)
+
+
+def _source(raw: dict[str, Any], path: Path, key: str = "source") -> Source:
+    cls, rest = _member(SOURCE_SHAPES, raw, path, key), _without_shape(raw)
+    if cls is Lines:
+        return _lines(rest, path, key)
+    if cls is TabulatedSource:
+        return _read(TabulatedSource.read, _SourceTableEntry, rest, path, key)  # type: ignore[no-any-return]
+    if cls is Together:
+        entry = _checked(_SumEntry, rest, path, key)
+        members = tuple(_source(item, path, f"{key}.sources[{k}]") for k, item in enumerate(entry.sources))
+        with _KeyPath(path, key):
+            return Together(sources=members, weights=None if entry.weights is None else tuple(entry.weights))
+    return _built(cls, _with_tables(cls, rest, path, key), path, key)  # type: ignore[no-any-return]
+
+
+def _lines(rest: dict[str, Any], path: Path, key: str) -> Lines:
     members = rest.pop("lines", [])
     if rest or not isinstance(members, list) or not members:
-        raise SetupError(f"{path}: source: a lamp of lines has one or more [[source.lines]] entries and no other key")
-    with _KeyPath(path, "source.lines"):
-        return Lines([_built(Line, item, path, f"source.lines[{k}]") for k, item in enumerate(members)])
+        raise SetupError(f"{path}: {key}: a lamp of lines has one or more [[{key}.lines]] entries and no other key")
+    with _KeyPath(path, f"{key}.lines"):
+        return Lines([_built(Line, item, path, f"{key}.lines[{k}]") for k, item in enumerate(members)])
 
 
 def _filter(raw: dict[str, Any], path: Path, key: str) -> Filter:
-    cls, rest = _member(FILTER_SHAPES, raw, path, key), _without_shape(raw)
-    if cls is not Tabulated:
-        return _built(cls, rest, path, key)  # type: ignore[no-any-return]
-    entry = _checked(_TableEntry, rest, path, key)
-    options: dict[str, Any] = {name: getattr(entry, name) for name in _TableEntry.model_fields if name != "file"}
-    options["repair"] = tuple(options["repair"])
-    with _KeyPath(path, f"{key}.file"):
-        return read_filter(path.parent / entry.file, **options)
+    cls = _member((*FILTER_SHAPES, *TRAIN_SHAPES), raw, path, key)
+    stated = {name: value for name, value in raw.items() if name in _BeamEntry.model_fields}
+    rest = {name: value for name, value in _without_shape(raw).items() if name not in stated}
+    if cls is Tabulated:
+        band = _read(read_filter, _TableEntry, rest, path, key)
+    else:
+        band = _built(cls, _with_tables(cls, rest, path, key), path, key)
+    beam = _checked(_BeamEntry, stated, path, key)
+    with _KeyPath(path, key):
+        return in_beam(band, **{name: getattr(beam, name) for name in stated})
 
 
 def _definition(name: str, path: Path) -> str:

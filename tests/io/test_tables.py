@@ -107,9 +107,9 @@ FAULTY = {
         "column 'signal .*': 'counts per blink' is not a unit that is known",
     ),
     "same name": ("x [nm],x [um]\n1,2\n", "column 'x'.* more than once"),
-    "ragged numbers": ("1 2\n3 4\n5\n", "the number of columns changed from 2 to 1 at row 3"),
-    "word in numbers": ("1 2\n3 x\n", "could not convert string 'x' to float64 at row 1, column 2"),
-    "trailing comma": ("1,2\n3,\n", "could not convert string '' to float64 at row 1, column 2"),
+    "ragged numbers": ("1 2\n3 4\n5\n", "data row 3: the number of columns changed from 2 to 1"),
+    "word in numbers": ("1 2\n3 x\n", "data row 2: could not convert string 'x' to float64, column 2"),
+    "trailing comma": ("1,2\n3,\n", "data row 2: could not convert string '' to float64, column 2"),
 }
 
 

@@ -25,7 +25,7 @@ PM, NM = u.pm, u.nm
         ),
         ({"passes": 3}, "passes must be 1, 2 or 4; got 3"),
         ({"passes": 0}, "passes must be 1, 2 or 4; got 0"),
-        ({"passes": 2, "opd_per_step": 37 * PM}, "opd_per_step is path difference already: leave passes at 1"),
+        ({"passes": 2, "opd_per_step": 37 * PM}, "opd_per_step is path difference already: leave passes and index at 1"),
         ({"saturation": 100.0, "dark": 200.0}, r"saturation \(100\) must lie above dark \(200\)"),
         ({"saturation": 0.0}, r"saturation \(0\) must lie above dark \(0\)"),
         ({"saturation": float("nan")}, "dark and saturation must be finite numbers of counts"),

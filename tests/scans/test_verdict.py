@@ -1,5 +1,7 @@
 """Measured over predicted: outcomes that respect both the tolerance and the uncertainty."""
 
+from dataclasses import replace
+
 import astropy.units as u
 import numpy as np
 import pytest
@@ -95,7 +97,7 @@ def upright(bench_light):
 
 def test_the_bench_scan_is_inside(upright):
     assert upright.verdict is INSIDE
-    assert [item.name for item in upright.comparisons] == ["contrast", "wavelength", "packet width"]
+    assert [item.name for item in upright.comparisons] == ["contrast", "wavelength", "packet width", "coherence length"]
     assert all(float(item.ratio.value) == pytest.approx(1, abs=4 * float(item.ratio.uncertainty)) for item in upright.comparisons)
 
 
@@ -130,15 +132,19 @@ def test_without_a_path_scale_the_width_is_compared_in_fringes(bench_light, trut
     bench = demo.bench_scan()
     even = Scan(position=bench.position.to_value(u.um) * 10 * STEP, signals=bench.signals, layout=ScanLayout(dark=200, saturation=65_000))
     result = reduce_scan(even, bench_light, tolerances=TIGHT, expected_contrast=demo.CONTRAST)
-    _, wavelength, width = result.comparisons
+    _, wavelength, width, length = result.comparisons
     assert result.wavelength is None
     assert wavelength.measured is None
-    assert wavelength.outcome is None
-    assert wavelength.reason == "the scan has no path scale"
+    assert wavelength.outcome is NOT_MEASURED
+    assert wavelength.reason.startswith("the scan has no path scale: give opd_per_step, or stage_per_step and passes")
+    assert length.measured is None
+    assert length.outcome is None
     assert width.measured == result.packet_width_fringes
     assert float(width.predicted.value) == pytest.approx(truth["packet_width_fringes"])
     assert width.outcome is INSIDE
-    assert result.verdict is INSIDE
+    assert result.verdict is NOT_MEASURED
+    free = replace(TIGHT, wavelength=None)
+    assert compared(result, bench_light, free, demo.CONTRAST).verdict is INSIDE
 
 
 def test_no_tolerance_at_all_decides_nothing(bench_light):

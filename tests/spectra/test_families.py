@@ -10,10 +10,14 @@ from whitefringe.spectra import (
     REPAIRS,
     SOURCE_SHAPES,
     Flat,
+    Lamp,
     Line,
     Lines,
     Tabulated,
+    TabulatedSource,
+    Thermal,
     Tilted,
+    Together,
     TopHat,
     detected,
     parameters_of,
@@ -27,6 +31,9 @@ WITHOUT_PARAMETERS = {
     Tabulated: {"wavelength": [1.5, 1.6, 1.7] * u.um, "transmission_values": [0.0, 0.9, 0.0]},
     Flat: {},
     Lines: {"lines": [Line(wavelength=633 * u.nm)]},
+    Lamp: {"name": "mercury"},
+    TabulatedSource: {"wavelength": [1.5, 1.6, 1.7] * u.um, "values": [0.0, 0.9, 0.0], "quantity": "power", "per": "wavelength"},
+    Together: {"sources": (Thermal(temperature=2900 * u.K), Lamp(name="mercury"))},
 }
 """Arguments of the members that no slider can describe."""
 

@@ -1,5 +1,7 @@
 """Filter curves from files: units by header or by word, columns by name or number, faults with file and row."""
 
+import re
+
 import astropy.units as u
 import numpy as np
 import pytest
@@ -104,12 +106,12 @@ FAULTY = {
     "sort": ("1500,0\n1560,0.9\n1520,0.4\n1600,0\n", "data row 3: the wavelengths are neither"),
     "merge-duplicates": (
         "1500,0\n1520,0.3\n1520,0.5\n1560,0.9\n1600,0\n",
-        "wavelength 1.52 um stands in the table more",
+        "data row 3: wavelength 1.52 um stands in the table more",
     ),
     "drop-non-finite": ("1500,0\n1520,0.4\n1540,nan\n1560,0.9\n1600,0\n", "data row 3: not a finite number"),
     "clip-negative": (
         "1500,-0.02\n1520,0.4\n1560,0.9\n1600,0\n",
-        "transmission -0.02 at 1.5 um is below zero",
+        "data row 1: transmission -0.02 at 1.5 um is below zero",
     ),
 }
 
@@ -121,7 +123,7 @@ def test_faults_name_the_file_and_are_repaired_on_request(put, repair):
     with pytest.raises(InputError, match=rf'h\.csv: {message}.*allow repair=\("{repair}",\)'):
         read_filter(path)
     for allowed in (repair, (repair,)):
-        shape = read_filter(path, repair=allowed)
+        shape = read_filter(path, repair=allowed, medium="vacuum")
         is_the_curve(shape)
         assert len(shape.notes) == 1
         assert shape.notes[0].startswith(f"{repair}: ")
@@ -137,7 +139,7 @@ def test_percent_that_exceeds_all_light_is_not_told_to_be_percent(put):
 def test_a_cut_curve_warns_with_the_file(put):
     path = put("cut.csv", "wavelength [nm],T\n1500,0\n1560,0.9\n1580,0.45\n")
     with pytest.warns(CurveEndsWarning, match=r"cut\.csv: at its long-wavelength end \(1\.58 um\) .* still at 50\.0%"):
-        shape = read_filter(path)
+        shape = read_filter(path, medium="vacuum")
     assert len(shape.notes) == 1
 
 
@@ -146,3 +148,43 @@ def test_fits_with_text_for_numbers_is_an_error_of_the_file(tmp_path):
     Table({"W": ["a", "b", "c"], "T": [0.0, 1.0, 0.0]}).write(path)
     with pytest.raises(FileContentError, match=r"text\.fits: column 'W'.* is not a number"):
         read_filter(path, wavelength_unit=u.nm)
+
+
+def test_votable(tmp_path):
+    path = tmp_path / "h.vot"
+    Table({"Wavelength": NM * u.nm, "Transmission": PERCENT / 100}).write(path, format="votable")
+    is_the_curve(read_filter(path))
+    # as filter services write it
+    path.write_text(re.sub(r"<TD>(1\d\d\d)</TD>", r"<TD>\g<1>0</TD>", path.read_text()).replace('unit="nm"', 'unit="AA"'))
+    is_the_curve(read_filter(path, wavelength_column="Wavelength", transmission_column="Transmission"))
+
+
+@pytest.mark.parametrize(("text", "scale"), [("angstroms", 10), ("AA", 10), ("microns", 1e-3), ("0.1nm", 10)])
+def test_an_off_standard_unit_is_noted_with_file_and_column(put, text, scale):
+    rows = "".join(f"{x * scale:.7g},{y / 100}\n" for x, y in zip(NM, PERCENT, strict=True))
+    path = put("odd.csv", f"wl [{text}],T\n{rows}")
+    shape = read_filter(path, medium="vacuum")
+    is_the_curve(shape)
+    (note,) = shape.notes
+    assert note.startswith(f"{path}: column 'wl': the unit '{text}' is no standard spelling; taken as ")
+
+
+@pytest.mark.parametrize("form", ["csv", "fits", "vot"])
+def test_ampere_is_angstrom_for_a_wavelength(tmp_path, form):
+    path = tmp_path / f"ampere.{form}"
+    if form == "csv":
+        path.write_text("wl [A],T\n" + "".join(f"{x * 10:.7g},{y / 100}\n" for x, y in zip(NM, PERCENT, strict=True)))
+    else:
+        table = Table({"wl": NM * 10 * u.A, "T": PERCENT / 100})
+        table.write(path, format="votable" if form == "vot" else "fits")
+    shape = read_filter(path, medium="vacuum")
+    is_the_curve(shape)
+    assert shape.notes == (f"{path}: column 'wl': the unit 'A' is the ampere by every standard; taken as Angstrom",)
+    is_the_curve(read_filter(path, wavelength_unit=u.AA))
+    with pytest.raises(UnitsError, match=r"column 'wl' is in Angstrom by its header, but wavelength_unit=nm was stated"):
+        read_filter(path, wavelength_unit=u.nm)
+
+
+def test_notes_of_other_columns_are_left_out(put):
+    path = put("odd.csv", "wl [nm],T,slit [microns]\n1500,0,1\n1520,0.4,1\n1560,0.9,1\n1600,0,1\n")
+    assert read_filter(path, medium="vacuum").notes == ()

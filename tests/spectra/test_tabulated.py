@@ -16,7 +16,7 @@ FAULTS = {
     "merge-duplicates": (
         [1500, 1510, 1510, 1520, 1530],
         [0.0, 0.3, 0.5, 0.9, 0.0],
-        "wavelength 1.51 um stands in the table more than once",
+        "data row 3: wavelength 1.51 um stands in the table more than once",
     ),
     "drop-non-finite": (
         [1500, 1505, 1510, 1520, np.nan, 1530],
@@ -26,7 +26,7 @@ FAULTS = {
     "clip-negative": (
         [1500, 1503, 1510, 1520, 1530],
         [-0.01, 0.0, 0.4, 0.9, -0.02],
-        r"transmission -0.02 at 1.53 um is below zero \(2 such rows\)",
+        r"data row 5: transmission -0.02 at 1.53 um is below zero \(2 such rows\)",
     ),
 }
 

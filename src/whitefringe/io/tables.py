@@ -1,11 +1,12 @@
-"""Tables of numbers with units: CSV, ECSV, FITS, and bare columns of numbers.
+"""Tables of numbers with units: CSV, ECSV, FITS, VOTable, and bare columns of numbers.
 
-The format is told by the file's name and first line; units come from the header (ECSV, FITS, or a CSV column name such as
-``wavelength [nm]``). Nothing is guessed: a column without a unit has none.
+The format is told by the file's name and first line; units come from the header (ECSV, FITS, VOTable, or a CSV column name such as
+``wavelength [nm]``). Nothing is guessed: a column without a unit has none, and an off-standard spelling that is understood is noted.
 """
 
 from __future__ import annotations
 
+import csv
 import hashlib
 import re
 import warnings
@@ -17,6 +18,8 @@ import numpy as np
 
 from ..errors import FileContentError
 from ._atomic import atomic
+from ._spellings import settled
+from ._votable import is_votable, read_votable
 
 if TYPE_CHECKING:
     from astropy.table import Table
@@ -31,13 +34,13 @@ def read_table(path: str | Path) -> Table:
     Parameters
     ----------
     path : path
-        ``.fits`` (first binary table), ECSV (known by its first line), CSV with a header line, or columns of numbers
-        without a header, separated by blanks or commas (columns are then named ``col0``, ``col1``, ...).
+        ``.fits`` (first binary table), VOTable (first table), ECSV (known by its first line), CSV with a header line, or columns of
+        numbers without a header, separated by blanks or commas (columns are then named ``col0``, ``col1``, ...).
 
     Returns
     -------
     astropy.table.Table
-        ``meta["path"]`` and ``meta["format"]`` say what was read.
+        ``meta["path"]`` and ``meta["format"]`` say what was read, ``meta["unit_notes"]`` which off-standard unit was taken for which.
 
     Raises
     ------
@@ -55,6 +58,7 @@ def read_table(path: str | Path) -> Table:
     table = reader(path)
     if len(table) == 0:
         raise FileContentError(f"{path}: the table has no rows")
+    table.meta["unit_notes"] = tuple(table.meta["unit_notes"] if kind == "CSV" else _settle_units(table, path))
     table.meta["path"], table.meta["format"] = str(path), kind
     return table
 
@@ -62,6 +66,8 @@ def read_table(path: str | Path) -> Table:
 def _reader_for(path: Path) -> tuple[str, Any]:
     if path.name.lower().endswith(FITS_ENDINGS):
         return "FITS table", _read_fits
+    if is_votable(path):
+        return "VOTable", _read_votable
     try:
         first = _first_line(path)
     except UnicodeDecodeError:
@@ -104,39 +110,64 @@ def _read_fits(path: Path) -> Table:
     except (OSError, ValueError, TypeError, IndexError, KeyError, VerifyError, AstropyWarning) as error:
         raise FileContentError(f"{path}: not a readable FITS table, or cut short ({_line(error)})") from None
     for name in table.colnames:
-        table[name].unit = _fits_unit(table[name].unit)
         _nan_where_masked(table, name)
     return _all_numbers(table, path)
 
 
 def _nan_where_masked(table: Table, name: str) -> None:
-    """FITS has no other mark for a number that is not there than NaN; astropy masks it."""
+    """FITS and VOTable have no other mark for a number that is not there than NaN; astropy masks it."""
     column = table[name]
     if column.dtype.kind == "f" and getattr(column, "mask", None) is not None:
         table[name] = column.filled(np.nan)
 
 
-def _fits_unit(unit: Any) -> Any:
-    """Accept a unit's name in the plural or in capitals, which the FITS standard does not know but files hold ("angstroms")."""
-    if unit is None or not isinstance(unit, u.UnrecognizedUnit):
-        return unit
-    for spelling in (unit.name.lower().rstrip("s"), unit.name.lower()):
-        try:
-            return u.Unit(spelling)
-        except ValueError:
-            continue
-    return None
+def _settle_units(table: Table, path: Path) -> list[str]:
+    """Replace units that only their spelling makes unknown; leave out those that stay unknown; say both."""
+    notes = []
+    for name in table.colnames:
+        written = table[name].unit
+        unit, off_standard = settled(written)
+        table[name].unit = unit
+        if off_standard:
+            notes.append(_unit_note(path, name, written, unit))
+    return notes
+
+
+def _unit_note(path: Path, name: str, written: Any, unit: Any) -> str:
+    meaning = "is not known here and was left out" if unit is None else f"is no standard spelling; taken as {unit}"
+    return f"{path}: column {name!r}: the unit {str(written)!r} {meaning}"
+
+
+def _read_votable(path: Path) -> Table:
+    table = read_votable(path)
+    for name in table.colnames:
+        _nan_where_masked(table, name)
+    return _all_numbers(table, path)
 
 
 def _read_ecsv(path: Path) -> Table:
     from astropy.table import Table
 
+    lines = path.read_text(encoding="utf-8-sig").splitlines()
     try:
-        return _all_numbers(Table.read(path.read_text(encoding="utf-8-sig").splitlines(), format="ascii.ecsv"), path)
+        with warnings.catch_warnings():
+            warnings.simplefilter("ignore", u.UnitsWarning)
+            return _all_numbers(Table.read(lines, format="ascii.ecsv"), path)
     except FileContentError:
         raise
     except Exception as error:  # the ECSV reader has no error class of its own
-        raise FileContentError(f"{path}: not valid ECSV ({_line(error)})") from None
+        raise FileContentError(f"{path}: not valid ECSV{_row_of_fault(lines)} ({_line(error)})") from None
+
+
+def _row_of_fault(lines: list[str]) -> str:
+    """Say which data row of an ECSV has another number of entries than the header, or one that is not a number."""
+    body = [line for line in lines if line.strip() and not line.startswith("#")]
+    separator = "," if any(line.startswith("# delimiter:") and "," in line for line in lines) else " "
+    rows = list(csv.reader(body, delimiter=separator, skipinitialspace=True))
+    for number, row in enumerate(rows[1:], start=1):
+        if len(row) != len(rows[0]) or not all(_is_numeric(entry) for entry in row if entry):
+            return f" in data row {number}"
+    return ""
 
 
 def _read_csv(path: Path) -> Table:
@@ -145,15 +176,24 @@ def _read_csv(path: Path) -> Table:
     try:
         table = text_tables.read(path, format="csv", comment=r"\s*#", encoding="utf-8-sig", fast_reader=False)
     except Exception as error:  # the reader raises several classes, some of them private
-        raise FileContentError(f"{path}: not valid CSV ({_line(error)})") from None
+        found = re.search(r"at data line (\d+)", str(error))
+        where = f" in data row {int(found[1]) + 1}" if found else ""
+        raise FileContentError(f"{path}: not valid CSV{where} ({_line(error)})") from None
+    notes = []
     for column in list(table.colnames):
         found = _NAME_WITH_UNIT.match(column)
         if found:
-            table[column].unit = _unit(found["unit"], path, column)
             name = found["name"] or column
+            unit, off_standard = settled(found["unit"])
+            if unit is None:
+                raise FileContentError(f"{path}: column {column!r}: {found['unit']!r} is not a unit that is known here")
+            if off_standard:
+                notes.append(_unit_note(path, name, found["unit"], unit))
+            table[column].unit = unit
             if name != column and name in table.colnames:
                 raise FileContentError(f"{path}: column {name!r} stands in the header more than once")
             table.rename_column(column, name)
+    table.meta["unit_notes"] = notes
     return _all_numbers(table, path)
 
 
@@ -164,15 +204,22 @@ def _read_bare(path: Path) -> Table:
     try:
         rows = np.loadtxt(path, delimiter=separator, ndmin=2, encoding="utf-8-sig")
     except ValueError as error:
-        raise FileContentError(f"{path}: {_line(error)}") from None
+        # the reader counts rows from 0 in one message and from 1 in another
+        what = re.sub(r" at row \d+(?=[,;. ])", "", _line(error))
+        raise FileContentError(f"{path}:{_bare_row_of_fault(path, separator)} {what}") from None
     return Table(rows, names=[f"col{k}" for k in range(rows.shape[1])])
 
 
-def _unit(text: str, path: Path, column: str) -> u.UnitBase:
+def _bare_row_of_fault(path: Path, separator: str | None) -> str:
     try:
-        return u.Unit(text)
-    except ValueError:
-        raise FileContentError(f"{path}: column {column!r}: {text!r} is not a unit that is known here") from None
+        lines = (line.partition("#")[0].strip() for line in path.read_text(encoding="utf-8-sig").splitlines())
+    except UnicodeDecodeError:
+        return ""
+    rows = [line.split(separator) for line in lines if line]
+    for number, row in enumerate(rows, start=1):
+        if len(row) != len(rows[0]) or not all(_is_numeric(entry) for entry in row):
+            return f" data row {number}:"
+    return ""
 
 
 def _all_numbers(table: Table, path: Path) -> Table:

@@ -23,6 +23,10 @@ NULL_DEPTH = 0.1
 """A minimum of the contrast counts as a null when it lies below this fraction of the height, as in `coherence`."""
 
 
+LOBE = 8.0
+"""A side lobe must stand this many standard deviations above the null before it."""
+
+
 def coherence_measured(packet: Packet, centre: float, peak: float, height: Estimate, definition: str) -> Estimate:
     """Return the coherence length [axis unit] with its gradient.
 
@@ -32,7 +36,7 @@ def coherence_measured(packet: Packet, centre: float, peak: float, height: Estim
         The packet does not show what the definition needs.
     """
     if definition == "power":
-        return _power(packet, height)
+        return _power(packet, peak, height)
     if definition == "bandwidth":
         return _bandwidth(packet, centre)
     if definition == "first-null":
@@ -44,22 +48,35 @@ def coherence_measured(packet: Packet, centre: float, peak: float, height: Estim
     return Estimate(share * (ends[1].value - ends[0].value), share * (ends[1].gradient - ends[0].gradient))
 
 
-def _power(packet: Packet, height: Estimate) -> Estimate:
-    """Parseval over the scan, less the noise's own power."""
-    power = packet.span * float(np.sum(np.abs(packet.coefficients) ** 2) - packet.noise**2 * packet.frequency.size)
+def _power(packet: Packet, peak: float, height: Estimate) -> Estimate:
+    """Integral of |z|^2 over the kept window (Parseval), less the noise's own power in it.
+
+    What lies beyond the window is bounded by the mean power just inside its shoulders, held over as much path again on both sides.
+    """
+    kept = min(1.0, 2 * packet.half_window / packet.span)
+    noise = packet.noise**2 * packet.frequency.size * kept
+    power = packet.span * float(np.sum(np.abs(packet.coefficients) ** 2) - noise)
     value = power / height.value**2
+    axis, z = packet.grid
+    distance = np.abs(axis - peak)
+    rim = (distance < packet.half_window - packet.shoulder) & (distance > packet.half_window - 3 * packet.shoulder)
+    outside = max(float(np.mean(np.abs(z[rim]) ** 2)) - packet.noise**2 * packet.frequency.size, 0.0) if np.any(rim) else 0.0
+    tail = 2 * packet.half_window * outside / height.value**2
     gradient = 2 * packet.span * np.conj(packet.coefficients) / height.value**2 - 2 * value / height.value * height.gradient
-    return Estimate(value, gradient)
+    return Estimate(value, gradient, systematic=tail)
 
 
 def _bandwidth(packet: Packet, centre: float) -> Estimate:
     """One over the full width at half maximum of the phase-corrected fringe spectrum, at the resolution of the scan.
 
-    How much the width changes when only the inner half of the scan is used stands for what the finite resolution does to it.
+    What the finite resolution does to the width is bounded by the change when only the inner half of the window is used, and by a
+    quarter of the resolution (one over the window).
     """
-    whole, inner = _spectral_width(packet, centre, 1.0), _spectral_width(packet, centre, 0.5)
+    kept = min(1.0, 2 * packet.half_window / packet.span)
+    whole, inner = _spectral_width(packet, centre, kept), _spectral_width(packet, centre, 0.5 * kept)
     value = 1 / whole.value
-    return Estimate(value, -whole.gradient / whole.value**2, systematic=abs(1 / inner.value - value))
+    coarse = 0.25 * value / (whole.value * kept * packet.span)
+    return Estimate(value, -whole.gradient / whole.value**2, systematic=max(abs(1 / inner.value - value), coarse))
 
 
 def _spectral_width(packet: Packet, centre: float, share: float) -> Estimate:
@@ -106,14 +123,14 @@ def _first_null(packet: Packet, centre: float, height: Estimate) -> Estimate:
     noise = packet.sigma(height.gradient)
     inner = np.arange(1, axis.size - 1)
     dips = inner[(contrast[1:-1] < contrast[:-2]) & (contrast[1:-1] <= contrast[2:])]
-    dips = dips[contrast[dips] < NULL_DEPTH * height.value + 2 * noise]
+    dips = dips[contrast[dips] < NULL_DEPTH * height.value - 2 * noise]
     ends = []
     for near, beyond in ((dips[dips < start][::-1], slice(None, None, -1)), (dips[dips >= start], slice(None))):
         lobe = 0.0
         if near.size:
             outer = contrast[: near[0]][beyond] if near[0] < start else contrast[near[0] :]
             lobe = float(np.max(outer[: max(abs(near[0] - start), 1)], initial=0.0))
-        if lobe < max(contrast[near[0]] if near.size else 0.0, 5 * noise):
+        if near.size == 0 or lobe < contrast[near[0]] + LOBE * noise:
             raise UndefinedWidthError("the packet shows no null with a side lobe beyond it above the noise; use another definition")
         ends.append(_minimum(packet, float(axis[near[0]]), float(axis[1] - axis[0])))
     return Estimate(0.5 * (ends[1].value - ends[0].value), 0.5 * (ends[1].gradient - ends[0].gradient))

@@ -31,6 +31,12 @@ PASSES = 2
 END_TAPER = 2.5
 """Length of the shoulders at both ends of a scan, in response lengths of the band (one over its width)."""
 
+SMOOTHING = 8
+"""The amplitudes that weigh the packet's centre are means over this fraction of the band."""
+
+SIGNIFICANT = 5.0
+"""Smoothed power must exceed the noise by this many of its standard deviations to count."""
+
 OVERSAMPLING = 4
 """The envelope is searched on a grid this much finer than the samples."""
 
@@ -53,7 +59,8 @@ class Packet:
     """Fourier coefficients of the packet.
 
     `coefficients` at `frequency` [1/axis unit] for an axis that starts at `origin` and is `span` long; `noise` is s, the rms error
-    of a coefficient; `mean_level` and `samples` are those of the scan.
+    of a coefficient; `mean_level` and `samples` are those of the scan; the window
+    about the packet that was kept ends, with its shoulders, `half_window` from the packet's centre.
     """
 
     coefficients: ComplexArray
@@ -63,6 +70,7 @@ class Packet:
     noise: float
     mean_level: FloatArray
     samples: int
+    half_window: float
 
     def sigma(self, gradient: Any) -> float:
         """Standard deviation that white noise gives a number with this gradient."""
@@ -138,10 +146,10 @@ def packet_in(axis: FloatArray, counts: FloatArray, band: Band) -> Packet:
     peak, _ = peak_of(first, band.carrier)
     # the packet is Hermitian about its centre: a window that is symmetric about it leaves its group delay alone
     half = max(min(peak - axis[0], axis[-1] - peak), reach)
-    return _packet(axis, relative * _shoulders(half - np.abs(axis - peak), reach), bins, mean, band)
+    return _packet(axis, relative * _shoulders(half - np.abs(axis - peak), reach), bins, mean, band, half)
 
 
-def _packet(axis: FloatArray, relative: FloatArray, bins: Any, mean: FloatArray, band: Band) -> Packet:
+def _packet(axis: FloatArray, relative: FloatArray, bins: Any, mean: FloatArray, band: Band, half: float = 0.0) -> Packet:
     step = float(axis[1] - axis[0])
     coefficients = 2.0 * np.fft.rfft(relative) / relative.size
     return Packet(
@@ -153,6 +161,7 @@ def _packet(axis: FloatArray, relative: FloatArray, bins: Any, mean: FloatArray,
         noise=2.0 * float(np.sqrt(band.noise_power)) / relative.size / float(np.mean(mean)),
         mean_level=mean,
         samples=relative.size,
+        half_window=half,
     )
 
 
@@ -193,12 +202,14 @@ def peak_of(packet: Packet, carrier: float) -> tuple[float, Estimate]:
 def centre_of(packet: Packet, start: float, carrier: float) -> Estimate:
     """Packet centre: where the packet agrees best with a symmetric packet of its own amplitude spectrum.
 
-    Maximum of |sum b_k c_k exp(2 pi i f_k x)| with b_k the smoothed amplitudes |c_k|: the amplitude-weighted group delay.
+    Maximum of |sum b_k c_k exp(2 pi i f_k x)| with b_k the smoothed amplitudes |c_k|: to first order the slope of a straight line
+    through the phases of the c_k, weighted by their power. Where the smoothed power does not stand above the noise, b_k is zero:
+    weights drawn from the noise itself would add to the error.
     """
     power = np.abs(packet.coefficients) ** 2
-    width = max(1, power.size // 12)
-    smooth = np.convolve(power, np.ones(width) / width, mode="same")
-    weight = np.sqrt(np.maximum(smooth - packet.noise**2, 0.0))
+    width = max(1, power.size // SMOOTHING)
+    smooth = np.convolve(power, np.ones(width) / width, mode="same") - packet.noise**2
+    weight = np.where(smooth > SIGNIFICANT / np.sqrt(width) * packet.noise**2, np.sqrt(np.maximum(smooth, 0.0)), 0.0)
     weighted = weight * packet.coefficients
     mean = float(np.sum(weight * np.abs(packet.coefficients) * packet.frequency) / np.sum(weight * np.abs(packet.coefficients)))
     offset = 2 * np.pi * (packet.frequency - mean)

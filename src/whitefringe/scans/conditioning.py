@@ -133,7 +133,7 @@ def _path(scan: Scan, kept: slice, notes: list[str]) -> tuple[FloatArray, u.Unit
         notes.append("path rebuilt from the phase of the reference channel")
         return opd_from_reference(scan, kept, values, notes), u.m
     if position.unit != STEP:
-        return np.asarray(position.to_value(u.m)) * layout.passes, u.m
+        return np.asarray(position.to_value(u.m)) * layout.passes * layout.index, u.m
     if layout.opd_per_step_si is not None:
         return np.asarray(position.value) * layout.opd_per_step_si, u.m
     notes.append("the length of a step is not known: results are in steps and fringe periods")

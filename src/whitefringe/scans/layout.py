@@ -35,6 +35,9 @@ class ScanLayout:
     passes : int
         How often the light travels the stage's way: 2 for a mirror that sends the light back on itself, 1 when the position is
         the path difference. Applies to `stage_per_step` and to positions that are lengths.
+    index : float
+        Refractive index of what the stage's way leads through, which makes optical path of travel: 1 in vacuum, about 1.00027 in air.
+        Applies where `passes` does.
     reference_wavelength : Quantity [vacuum wavelength], optional
         Needed with `reference`. One fringe of the reference is one such wavelength of path.
     saturation : float, optional
@@ -57,6 +60,7 @@ class ScanLayout:
     opd_per_step: u.Quantity | None = None
     stage_per_step: u.Quantity | None = None
     passes: int = 1
+    index: float = 1.0
     reference_wavelength: u.Quantity | None = None
     saturation: float | None = None
     dark: float = 0.0
@@ -74,8 +78,10 @@ class ScanLayout:
                 raise ScanLayoutError(f"{name} must be a column's name or its number from 0; got {column!r}")
         if isinstance(self.passes, bool) or self.passes not in (1, 2, 4):
             raise ScanLayoutError(f"passes must be 1, 2 or 4; got {self.passes!r}")
-        if self.passes != 1 and self.opd_per_step is not None:
-            raise ScanLayoutError("opd_per_step is path difference already: leave passes at 1, or give stage_per_step")
+        if not 1 <= self.index < 5:
+            raise ScanLayoutError(f"index must be from 1 to below 5; got {self.index}")
+        if (self.passes != 1 or self.index != 1) and self.opd_per_step is not None:
+            raise ScanLayoutError("opd_per_step is path difference already: leave passes and index at 1, or give stage_per_step")
         if self.reference_wavelength is not None:
             positive_si(self.reference_wavelength, u.m, "reference_wavelength", "nm")
         _ = self.opd_per_step_si
@@ -92,4 +98,4 @@ class ScanLayout:
         if per_step is None:
             return None
         sign = -1.0 if np.all(as_si(per_step, u.m, name, "pm") < 0) else 1.0
-        return sign * positive_si(per_step * sign, u.m, name, "pm") * (self.passes if name == "stage_per_step" else 1)
+        return sign * positive_si(per_step * sign, u.m, name, "pm") * (self.passes * self.index if name == "stage_per_step" else 1)

@@ -8,6 +8,7 @@ from typing import Any
 import astropy.units as u
 import numpy as np
 
+from ..coherence import coherence_length
 from ..coherence import packet_width as predicted_packet_width
 from ..errors import InputError, NoFringeError, PacketCutOffError, ScanError, TooFewSamplesError, UndefinedWidthError
 from ..results import Measured
@@ -29,6 +30,8 @@ LEAST_SIGNAL_TO_NOISE = 5.0
 
 MOST_CONTRAST = 1.02
 """A contrast that lies above this by five of its uncertainties is refused."""
+
+NO_SCALE = "the scan has no path scale: give opd_per_step, or stage_per_step and passes, or positions with a unit"
 
 METHOD = "analytic signal in the fringes' band; white-noise errors, first order"
 
@@ -57,6 +60,7 @@ class ScanResult:
     fringe_period, fringe_frequency : at the packet centre
     wavelength : the fringe period, where the path is known; else None
     coherence_length : by the definition asked for; a reason in words where the packet does not show it
+    definition : name of the definition of the coherence length
     signal_to_noise : contrast over its uncertainty
     samples_per_fringe : of the scan
     notes : what was done to the scan
@@ -71,6 +75,7 @@ class ScanResult:
     fringe_frequency: Measured
     wavelength: Measured | None
     coherence_length: Measured | str
+    definition: str
     signal_to_noise: float
     samples_per_fringe: float
     notes: tuple[str, ...]
@@ -129,7 +134,12 @@ def reduce_scan(
     Notes
     -----
     The uncertainties are those of white noise (photon and read-out) at the scan's own mean level, carried to first order. Errors of
-    the path axis are not in them: fringes that move during the scan, or a stage that is wrongly scaled, are for other checks.
+    the path axis are not in them: fringes that move during the scan, or a stage that is wrongly scaled, are for other checks. The
+    uncertainty of a coherence length by ``bandwidth`` or ``power`` holds a bound for what the finite scan does to it as well.
+
+    The packet centre is the slope of a straight line through the phase of the fringe spectrum, each frequency weighted by its power.
+    In arms of equal dispersion that is where the path difference is zero. In arms that differ, the fringe period at the centre is no
+    longer the mean wavelength, and the greatest contrast is lower than that of the light.
 
     References
     ----------
@@ -151,7 +161,8 @@ def reduce_scan(
 def compared(result: ScanResult, expected: Spectrum, tolerances: Tolerances, expected_contrast: float = 1.0) -> ScanResult:
     """Return the result with comparisons against predicted light, and the verdict.
 
-    A scan without a path scale is compared by its packet width in fringe periods; its wavelength is then not measured.
+    A scan without a path scale is compared by its packet width in fringe periods; its wavelength, and a coherence length on which a
+    tolerance is set, are then not measured.
     """
     if not 0 < expected_contrast <= 1:
         raise InputError(f"expected_contrast must be above 0 and at most 1; got {expected_contrast}")
@@ -169,12 +180,27 @@ def compared(result: ScanResult, expected: Spectrum, tolerances: Tolerances, exp
             name="wavelength",
             measured=result.wavelength,
             predicted=light,
-            tolerance=tolerances.wavelength if path_known else None,
-            reason="" if path_known else "the scan has no path scale",
+            tolerance=tolerances.wavelength,
+            reason="" if path_known else NO_SCALE,
         ),
         Comparison(name="packet width", measured=widths[0], predicted=widths[1], tolerance=tolerances.packet_width),
+        *_coherence_compared(result, expected, tolerances.coherence_length),
     )
     return replace(result, comparisons=comparisons, verdict=overall(item.outcome for item in comparisons))
+
+
+def _coherence_compared(result: ScanResult, expected: Spectrum, limits: tuple[float, float] | None) -> tuple[Comparison, ...]:
+    """Coherence length by the result's definition; nothing where the light has none and none is asked for."""
+    try:
+        predicted = coherence_length(expected, result.definition)
+    except UndefinedWidthError:
+        if limits is None:
+            return ()
+        raise
+    known = result.wavelength is not None
+    measured = result.coherence_length if known and isinstance(result.coherence_length, Measured) else None
+    reason = "" if measured is not None else NO_SCALE if not known else str(result.coherence_length)
+    return (Comparison(name="coherence length", measured=measured, predicted=predicted, tolerance=limits, reason=reason),)
 
 
 def _found_band(scan: Scan, even: EvenScan, expected: Spectrum | None) -> Band:
@@ -291,15 +317,16 @@ def _result(
     fringe_period = measured(period, "fringe period at the packet centre")
     return ScanResult(
         contrast=contrast,
-        opd_centre=measured(centre, "packet centre: amplitude-weighted group delay"),
+        opd_centre=measured(centre, "packet centre: power-weighted group delay"),
         packet_width=measured(width, "full width of the packet at half its greatest contrast"),
         packet_width_fringes=measured(fringes, "packet width in fringe periods", one),
         fringe_period=fringe_period,
         fringe_frequency=measured(frequency.scaled(1 / scale), "fringe frequency at the packet centre", 1 / unit),
-        wavelength=replace(fringe_period, definition="vacuum wavelength: the fringe period") if even.path_known else None,
+        wavelength=replace(fringe_period, definition="wavelength: the fringe period in optical path") if even.path_known else None,
         coherence_length=coherence
         if isinstance(coherence, str)
         else measured(coherence, f"{definition}: {DEFINITIONS_MEASURED[definition]}"),
+        definition=definition,
         signal_to_noise=float(contrast.value / contrast.uncertainty),
         samples_per_fringe=float(1 / (frequency.value * even.step)),
         notes=even.notes,

@@ -48,6 +48,12 @@ class Scan:
             raise ScanLayoutError(f'signals must hold "signal"; got {", ".join(signals) or "nothing"}')
         if self.layout.reference is not None and "reference" not in signals:
             raise ScanLayoutError('the layout names a reference channel, but signals hold no "reference"')
+        idle = self.layout.stage_per_step is None and (self.layout.passes != 1 or self.layout.index != 1)
+        if position.unit == STEP and idle and self.layout.reference is None:
+            raise ScanLayoutError(
+                "passes and index have no effect on steps of unknown length: give the step's length as stage_per_step (such as "
+                '"1 um"), or a position column with a unit'
+            )
         for name, values in signals.items():
             if values.shape != position.shape or values.ndim != 1:
                 raise ScanLayoutError(f"{name} has shape {values.shape}, but position has {position.shape}")

@@ -24,13 +24,16 @@ ZERO_PADDING = 4
 FAINTEST_LINE = 0.2
 """Lines are listed down to this fraction of the strongest line's amplitude: below lie window and drive-error side-bands."""
 
+FAINTEST = 5.0
+"""A line must stand this many times above the rms noise of the amplitude."""
+
 MEAN_SHARE = 1 / 6
 """The slow mean follows changes up to this fraction of the lowest frequency of the fringes' band."""
 
 METHOD = "greatest of the Hann-windowed spectrum, lines separated; error from white noise alone"
 
-HANN_FREQUENCY_LOSS = 2.02
-"""Variance of a line's frequency with a Hann window over that without (asymptotic, from the window's second moments)."""
+HANN_FREQUENCY_LOSS = 2.35
+"""Variance of a line's frequency with a Hann window over that without (sum w^2 n^2 sum n^2 / (sum w n^2)^2 about its middle)."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -90,7 +93,7 @@ def spectrum_from_scan(scan: Scan) -> ScanSpectrum:
 
     Notes
     -----
-    Uncertainties are those of a sinusoid in white noise (Kay 1993, ex. 3.14: var f = 12 / [(2 pi)^2 eta N (N^2 - 1)]) times 2.02 for
+    Uncertainties are those of a sinusoid in white noise (Kay 1993, ex. 3.14: var f = 12 / [(2 pi)^2 eta N (N^2 - 1)]) times 2.35 for
     the window. They do not hold errors of the path axis, which common practice finds to be far greater on a real stage.
     """
     even = even_scan(scan)
@@ -104,7 +107,7 @@ def spectrum_from_scan(scan: Scan) -> ScanSpectrum:
     noise = float(np.median(amplitude[ZERO_PADDING * FEWEST_FRINGES :])) / np.sqrt(np.log(2.0))
     peaks = _peaks(amplitude, noise)
     if peaks.size == 0:
-        limit = float(noise * (np.sqrt(np.log(values.size)) + 1.645))
+        limit = float(noise * (FAINTEST + 1.645 / np.sqrt(2.0)))
         raise NoFringeError(f"{scan.name}: no line above the noise; amplitude below {limit:.2g} (95 %)", upper_limit=limit)
     starts = peaks * grid * even.step
     found = separated_lines(values * window, window, starts)
@@ -124,7 +127,7 @@ def spectrum_from_scan(scan: Scan) -> ScanSpectrum:
 def _peaks(amplitude: FloatArray, noise: float) -> FloatArray:
     """Grid indices of the lines, strongest first."""
     low = ZERO_PADDING * FEWEST_FRINGES
-    floor = max(FAINTEST_LINE * float(np.max(amplitude[low:])), 5.0 * noise)
+    floor = max(FAINTEST_LINE * float(np.max(amplitude[low:])), FAINTEST * noise)
     found, _ = find_peaks(amplitude, height=floor, distance=2 * ZERO_PADDING, prominence=floor / 2)
     found = found[(found >= low) & (found < amplitude.size - 1)]
     return np.asarray(found[np.argsort(amplitude[found])[::-1]])

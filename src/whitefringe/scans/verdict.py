@@ -32,15 +32,17 @@ class Tolerances:
 
     Parameters
     ----------
-    contrast, wavelength, packet_width : (low, high) or None
+    contrast, wavelength, packet_width, coherence_length : (low, high) or None
+        The coherence length is by the definition asked for, and not judged by default.
     """
 
     contrast: tuple[float, float] | None = (0.8, 1.05)
     wavelength: tuple[float, float] | None = (0.99, 1.01)
     packet_width: tuple[float, float] | None = (0.9, 1.1)
+    coherence_length: tuple[float, float] | None = None
 
     def __post_init__(self) -> None:
-        for name in ("contrast", "wavelength", "packet_width"):
+        for name in ("contrast", "wavelength", "packet_width", "coherence_length"):
             limits = getattr(self, name)
             numbers = isinstance(limits, (tuple, list)) and len(limits) == 2 and all(isinstance(x, (int, float)) for x in limits)
             if limits is not None and not (numbers and 0 <= limits[0] < limits[1]):
@@ -114,5 +116,5 @@ def comparisons_text(comparisons: Iterable[Comparison]) -> str:
         limits = "not set" if item.tolerance is None else f"{item.tolerance[0]:g} to {item.tolerance[1]:g}"
         outcome = "not judged" if item.outcome is None else str(item.outcome)
         reason = f" ({item.reason})" if item.reason else ""
-        lines.append(f"{item.name:<13} {ratio:<18} tolerance {limits:<15} {outcome}{reason}")
+        lines.append(f"{item.name:<16} {ratio:<18} tolerance {limits:<15} {outcome}{reason}")
     return "\n".join(lines)

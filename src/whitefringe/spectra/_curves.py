@@ -15,6 +15,7 @@ import numpy as np
 from ..errors import CurveEndsWarning, FileContentError, InputError, UnitsError
 from ..io import read_table
 from ..units import FloatArray, read_only
+from ._air import vacuum_from_air
 
 REPAIRS = ("sort", "merge-duplicates", "drop-non-finite", "clip-negative")
 """Names of the repairs: put rows in order; average rows of equal wavelength; leave out rows that are not finite; set values below
@@ -36,16 +37,53 @@ class Curve:
     notes: tuple[str, ...]
 
 
+MEDIA = ("vacuum", "air")
+"""In what a table's wavelengths may be."""
+
+
 def read_curve(
-    path: Any, wavelength_unit: Any, transmission_unit: Any, wavelength_column: str | int, transmission_column: str | int
-) -> tuple[u.Quantity, u.Quantity]:
-    """Return the two columns of a file as Quantities, units from the header or from the call."""
+    path: Any,
+    wavelength_unit: Any,
+    transmission_unit: Any,
+    wavelength_column: str | int,
+    transmission_column: str | int,
+    medium: str | None,
+) -> tuple[u.Quantity, u.Quantity, tuple[str, ...]]:
+    """Return the two columns of a file as Quantities in vacuum, units from the header or from the call, and what was taken for what."""
     table = read_table(path)
     wavelength = _column(table, wavelength_column, path)
     values = _column(table, transmission_column, path)
+    notes = [note for note in table.meta["unit_notes"] if any(f"column {column.name!r}" in note for column in (wavelength, values))]
+    if getattr(wavelength, "unit", None) == u.A:
+        wavelength.unit = u.AA
+        notes.append(f"{path}: column {wavelength.name!r}: the unit 'A' is the ampere by every standard; taken as Angstrom")
     first = _with_unit(wavelength, wavelength_unit, "wavelength_unit", path, None)
     second = _with_unit(values, transmission_unit, "transmission_unit", path, u.dimensionless_unscaled)
-    return first, second
+    stated = _medium(table.meta, medium, path)
+    if stated is None and first.unit.physical_type in ("length", "wavenumber"):
+        notes.append(
+            f'{path}: nothing says whether the wavelengths are in vacuum or in air; taken as vacuum (say medium="vacuum" or "air")'
+        )
+    return _in_vacuum(first, stated, path), second, tuple(notes)
+
+
+def _medium(header: Any, stated: str | None, path: Any) -> str | None:
+    """What the call says of the medium, else the header by a key ``medium`` or ``AIRORVAC``; both must agree."""
+    if stated is not None and stated not in MEDIA:
+        raise InputError(f'medium must be "vacuum" or "air"; got {stated!r}')
+    words = [str(value).strip().lower() for key, value in header.items() if str(key).lower() in ("medium", "airorvac")]
+    written = next((name for name in MEDIA for word in words if word in (name, name[:3])), None)
+    if stated is not None and written is not None and stated != written:
+        raise InputError(f'{path}: the wavelengths are in {written} by the header, but medium="{stated}" was stated')
+    return stated or written
+
+
+def _in_vacuum(wavelength: u.Quantity, medium: str | None, path: Any) -> u.Quantity:
+    if medium != "air":
+        return wavelength
+    if not wavelength.unit.is_equivalent(u.m):
+        raise InputError(f"{path}: only wavelengths can be in air; this column is in {wavelength.unit}: leave medium out")
+    return vacuum_from_air(np.asarray(wavelength.to_value(u.m)), str(path)) * u.m
 
 
 def _column(table: Any, which: str | int, path: Any) -> Any:
@@ -83,9 +121,10 @@ def prepare_curve(wavelength: Any, values: Any, repair: tuple[str, ...], origin:
         raise InputError(f"{origin}: wavelength and transmission must be two columns of one length; got {x.shape} and {y.shape}")
     notes: list[str] = []
     x, y, rows = _finite(x, y, repair, origin, notes)
-    x, y = _ordered(x, y, rows, repair, origin, notes)
-    x, y = _single(x, y, repair, origin, notes)
-    y = _not_negative(x, y, repair, origin, notes)
+    x, y, rows = _ordered(x, y, rows, repair, origin, notes)
+    row_of = dict(zip(x.tolist(), rows.tolist(), strict=True))
+    x, y = _single(x, y, rows, repair, origin, notes)
+    y = _not_negative(x, y, row_of, repair, origin, notes)
     if x.size < 2 or not np.any(y > 0):
         raise InputError(f"{origin}: a curve needs two points or more and some transmission above zero; got {x.size} points")
     if x[0] <= 0:
@@ -135,37 +174,37 @@ def _finite(x: FloatArray, y: FloatArray, repair: tuple[str, ...], origin: str, 
 def _ordered(x: FloatArray, y: FloatArray, rows: Any, repair: tuple[str, ...], origin: str, notes: list[str]) -> Any:
     steps = np.diff(x)
     if np.all(steps >= 0):
-        return x, y
+        return x, y, rows
     if np.all(steps <= 0):
-        return x[::-1], y[::-1]
+        return x[::-1], y[::-1], rows[::-1]
     turn = int(np.argmax(steps * steps[steps != 0][0] < 0)) + 1
     _may(repair, "sort", f"{origin}: data row {rows[turn]}: the wavelengths are neither rising nor falling")
     order = np.argsort(x, kind="stable")
     notes.append(f"sort: {x.size} rows put in order")
-    return x[order], y[order]
+    return x[order], y[order], rows[order]
 
 
-def _single(x: FloatArray, y: FloatArray, repair: tuple[str, ...], origin: str, notes: list[str]) -> Any:
+def _single(x: FloatArray, y: FloatArray, rows: Any, repair: tuple[str, ...], origin: str, notes: list[str]) -> Any:
     same = np.diff(x) == 0
     if not np.any(same):
         return x, y
-    first = x[int(np.argmax(same))]
-    _may(repair, "merge-duplicates", f"{origin}: wavelength {first * 1e6:.6g} um stands in the table more than once")
+    pair = int(np.argmax(same))
+    fault = f"data row {max(rows[pair], rows[pair + 1])}: wavelength {x[pair] * 1e6:.6g} um stands in the table more than once"
+    _may(repair, "merge-duplicates", f"{origin}: {fault}")
     unique, inverse, counts = np.unique(x, return_inverse=True, return_counts=True)
     notes.append(f"merge-duplicates: {x.size - unique.size} rows averaged into others")
     return unique, np.bincount(inverse, weights=y) / counts
 
 
-def _not_negative(x: FloatArray, y: FloatArray, repair: tuple[str, ...], origin: str, notes: list[str]) -> FloatArray:
+def _not_negative(
+    x: FloatArray, y: FloatArray, row_of: dict[float, int], repair: tuple[str, ...], origin: str, notes: list[str]
+) -> FloatArray:
     below = y < 0
     if not np.any(below):
         return y
     worst = int(np.argmin(y))
-    _may(
-        repair,
-        "clip-negative",
-        f"{origin}: transmission {y[worst]:.3g} at {x[worst] * 1e6:.6g} um is below zero ({int(np.sum(below))} such rows)",
-    )
+    fault = f"transmission {y[worst]:.3g} at {x[worst] * 1e6:.6g} um is below zero ({int(np.sum(below))} such rows)"
+    _may(repair, "clip-negative", f"{origin}: data row {row_of[float(x[worst])]}: {fault}")
     notes.append(f"clip-negative: {int(np.sum(below))} values set to zero, the lowest {y[worst]:.3g}")
     return np.maximum(y, 0.0)
 

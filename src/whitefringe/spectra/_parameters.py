@@ -6,7 +6,7 @@ and the documentation read that description, so that a new member is written in 
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, fields
+from dataclasses import MISSING, dataclass, field, fields
 from typing import Any
 
 import astropy.units as u
@@ -24,10 +24,10 @@ class Parameter:
     start: float
 
 
-def parameter(label: str, unit: u.UnitBase, *, low: float, high: float, step: float, start: float) -> Any:
-    """Return a dataclass field that carries its `Parameter` description."""
+def parameter(label: str, unit: u.UnitBase, *, low: float, high: float, step: float, start: float, default: Any = MISSING) -> Any:
+    """Return a dataclass field that carries its `Parameter` description, with a `default` where the field need not be given."""
     described = Parameter(label=label, unit=unit, low=low, high=high, step=step, start=start)
-    return field(metadata={"parameter": described})
+    return field(default=default, metadata={"parameter": described})
 
 
 def parameters_of(shape: Any) -> dict[str, Parameter]:

@@ -8,73 +8,22 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 from functools import cached_property
-from typing import Any, ClassVar, Protocol, runtime_checkable
+from typing import Any, ClassVar
 
 import astropy.units as u
 import numpy as np
 
-from ..errors import InputError
-from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, is_length, one_frequency_si, positive_si
+from ..units import SPEED_OF_LIGHT, FloatArray
 from ._curves import REPAIRS, Curve, prepare_curve, read_curve
 from ._parameters import parameter
-from .lines import FOUR_LN2, WIDTHS, edges_of, width_si
-
-_REACH = 3.5
-"""A Gaussian is followed to this many full widths from its centre, where 2e-15 of its peak is left."""
-
-
-@runtime_checkable
-class Filter(Protocol):
-    """What every filter shape offers."""
-
-    @property
-    def support_si(self) -> tuple[float, float]:
-        """Lowest and highest frequency [Hz] that pass."""
-        ...
-
-    @property
-    def breakpoints_si(self) -> FloatArray:
-        """Frequencies [Hz] where the slope jumps."""
-        ...
-
-    def transmission_si(self, frequency: FloatArray) -> FloatArray:
-        """Fraction of photons let through at `frequency` [Hz]."""
-        ...
-
-
-class _Shape:
-    """Shared by all shapes: the public twin of `transmission_si`."""
-
-    breakpoints_si: FloatArray = np.empty(0)
-
-    def transmission(self, at: Any) -> FloatArray:
-        """Fraction of photons let through.
-
-        Parameters
-        ----------
-        at : Quantity [vacuum wavelength or frequency], any shape
-
-        Returns
-        -------
-        ndarray, same shape
-        """
-        frequency = np.asarray(as_frequency_si(at, "at"), dtype=float)
-        low, high = self.support_si  # type: ignore[attr-defined]
-        inside = (frequency >= low) & (frequency <= high)
-        return np.where(inside, self.transmission_si(np.clip(frequency, low, high)), 0.0)  # type: ignore[attr-defined]
-
-
-def _edges_si(centre: Any, width: Any, reach: float = 0.5) -> tuple[float, float]:
-    """Frequencies [Hz] at centre -+ reach x width, on the axis (wavelength or frequency) of the width's unit."""
-    centre_si = one_frequency_si(centre, "centre")
-    if is_length(as_quantity(width, "width", WIDTHS)):
-        low, high = edges_of(SPEED_OF_LIGHT / centre_si, 2 * reach * positive_si(width, u.m, "width", "nm"), "width")
-        return SPEED_OF_LIGHT / high, SPEED_OF_LIGHT / low
-    return edges_of(centre_si, 2 * reach * positive_si(width, u.Hz, "width", "THz"), "width")
+from ._shape import Filter, FilterShape, Peak, band_edges_si
+from .edges import LongPass, ShortPass
+from .lines import FOUR_LN2
+from .shapes import Lorentzian, MultiCavity, SuperGaussian, Trapezoid
 
 
 @dataclass(frozen=True, kw_only=True)
-class TopHat(_Shape):
+class TopHat(FilterShape):
     """Full transmission between two edges, none outside.
 
     Parameters
@@ -82,6 +31,12 @@ class TopHat(_Shape):
     centre : Quantity [vacuum wavelength or frequency]
     width : Quantity [wavelength or frequency]
         Distance of the edges, which lie at centre -+ width/2 on the axis of the width's unit.
+
+    Notes
+    -----
+    A top-hat in wavelength and one in frequency of the same centre and nearly the same width are two different bands: equal steps in
+    wavelength are unequal in frequency, so the band in wavelength reaches farther to the blue in hertz. 1.65 um and 0.3 um: 166.6 to
+    199.9 THz, whose middle is at 1.636 um; 1.65 um and 33.31 THz: 165.0 to 198.3 THz.
 
     Examples
     --------
@@ -101,7 +56,7 @@ class TopHat(_Shape):
     @cached_property
     def support_si(self) -> tuple[float, float]:
         """Frequencies of the edges [Hz]."""
-        return _edges_si(self.centre, self.width)
+        return band_edges_si(self.centre, self.width)
 
     def transmission_si(self, frequency: FloatArray) -> FloatArray:
         """One, inside the support."""
@@ -109,7 +64,7 @@ class TopHat(_Shape):
 
 
 @dataclass(frozen=True, kw_only=True)
-class Gaussian(_Shape):
+class Gaussian(Peak):
     """A Gaussian band-pass: T = exp(-4 ln2 ((x - centre)/fwhm)^2), x on the axis of the width's unit.
 
     Parameters
@@ -128,33 +83,16 @@ class Gaussian(_Shape):
     centre: u.Quantity = parameter("centre", u.um, low=0.4, high=2.5, step=0.005, start=1.65)
     fwhm: u.Quantity = parameter("full width (FWHM)", u.nm, low=5.0, high=300.0, step=5.0, start=250.0)
 
-    def __post_init__(self) -> None:
-        width_si(one_frequency_si(self.centre, "centre"), self.fwhm, "fwhm")
+    @property
+    def _reach(self) -> float:
+        return 3.5
 
-    @cached_property
-    def _axis_si(self) -> tuple[bool, float, float]:
-        """Whether the axis is wavelength; centre and width on it [m or Hz]."""
-        centre = float(as_frequency_si(self.centre, "centre"))
-        if is_length(u.Quantity(self.fwhm)):
-            return True, SPEED_OF_LIGHT / centre, float(as_si(self.fwhm, u.m, "fwhm"))
-        return False, centre, float(as_si(self.fwhm, u.Hz, "fwhm"))
-
-    @cached_property
-    def support_si(self) -> tuple[float, float]:
-        """Frequencies [Hz] beyond which less than 2e-15 of the peak passes."""
-        in_wavelength, centre, width = self._axis_si
-        low, high = max(centre - _REACH * width, 0.1 * centre), centre + _REACH * width
-        return (SPEED_OF_LIGHT / high, SPEED_OF_LIGHT / low) if in_wavelength else (low, high)
-
-    def transmission_si(self, frequency: FloatArray) -> FloatArray:
-        """Transmission at `frequency` [Hz]."""
-        in_wavelength, centre, width = self._axis_si
-        x = SPEED_OF_LIGHT / frequency if in_wavelength else frequency
-        return np.asarray(np.exp(-FOUR_LN2 * ((x - centre) / width) ** 2))
+    def _profile(self, x: FloatArray) -> FloatArray:
+        return np.asarray(np.exp(-FOUR_LN2 * x**2))
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
-class Tabulated(_Shape):
+class Tabulated(FilterShape):
     """A measured curve, joined by straight lines in wavelength.
 
     Parameters
@@ -167,11 +105,13 @@ class Tabulated(_Shape):
         Which of `REPAIRS` may be made; what is not listed here is an error.
     origin : str
         Where the curve is from, for messages and records.
+    remarks : tuple of str
+        What was taken for what when the curve was read.
 
     Attributes
     ----------
     notes : tuple of str
-        What was repaired, and what may be missing.
+        What was repaired, what may be missing, and the remarks.
 
     Warns
     -----
@@ -184,6 +124,7 @@ class Tabulated(_Shape):
     transmission_values: Any
     repair: tuple[str, ...] | str = ()
     origin: str = "table"
+    remarks: tuple[str, ...] = ()
     curve: Curve = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
@@ -198,8 +139,8 @@ class Tabulated(_Shape):
 
     @property
     def notes(self) -> tuple[str, ...]:
-        """What was repaired and what may be missing, in words."""
-        return self.curve.notes
+        """What was repaired, what may be missing, and the remarks, in words."""
+        return (*self.curve.notes, *self.remarks)
 
     @property
     def support_si(self) -> tuple[float, float]:
@@ -217,61 +158,6 @@ class Tabulated(_Shape):
         return np.interp(SPEED_OF_LIGHT / frequency, self.curve.wavelength_si, self.curve.transmission)
 
 
-@dataclass(frozen=True, kw_only=True, eq=False)
-class Tilted(_Shape):
-    """A filter turned in a collimated beam: its curve shifts to the blue.
-
-    lambda(theta) = lambda0 sqrt(1 - (sin theta / n_eff)^2), applied to every wavelength of the curve
-    (effective-index approximation, good for small angles and narrow bands).
-
-    Parameters
-    ----------
-    filter : Filter
-        The filter at normal incidence.
-    angle : Quantity [angle]
-        Angle of incidence in air or vacuum, 0 to below 90 degrees.
-    effective_index : float
-        Effective index of the coating, above 1; from the maker, or fitted. Common practice: 1.4 to 2.2.
-    """
-
-    shape: ClassVar[str] = "tilted"
-    filter: Filter
-    angle: u.Quantity
-    effective_index: float = 1.8
-
-    def __post_init__(self) -> None:
-        angle = as_si(self.angle, u.rad, "angle", "deg")
-        if not isinstance(self.filter, Filter) or isinstance(self.filter, type):
-            raise InputError(f"filter must be a filter shape such as spectra.TopHat; got {self.filter!r}")
-        if np.ndim(angle) != 0:
-            raise InputError(f"angle must be one number; got an array of shape {np.shape(angle)}")
-        if not 0 <= angle < np.pi / 2:
-            raise InputError(f"angle must be from 0 to below 90 deg; got {self.angle}")
-        if not self.effective_index > 1:
-            raise InputError(f"effective_index must be above 1; got {self.effective_index}")
-
-    @cached_property
-    def factor(self) -> float:
-        """Wavelengths of the tilted curve over those of the upright one, at most 1."""
-        angle = float(as_si(self.angle, u.rad, "angle", "deg"))
-        return float(np.sqrt(1.0 - (np.sin(angle) / self.effective_index) ** 2))
-
-    @property
-    def support_si(self) -> tuple[float, float]:
-        """Lowest and highest frequency [Hz] that pass."""
-        low, high = self.filter.support_si
-        return low / self.factor, high / self.factor
-
-    @property
-    def breakpoints_si(self) -> FloatArray:  # type: ignore[override]
-        """Frequencies [Hz] where the slope jumps."""
-        return np.asarray(self.filter.breakpoints_si) / self.factor
-
-    def transmission_si(self, frequency: FloatArray) -> FloatArray:
-        """Transmission at `frequency` [Hz]."""
-        return self.filter.transmission_si(frequency * self.factor)
-
-
 def read_filter(
     path: Any,
     *,
@@ -280,8 +166,9 @@ def read_filter(
     wavelength_column: str | int = 0,
     transmission_column: str | int = 1,
     repair: tuple[str, ...] | str = (),
+    medium: str | None = None,
 ) -> Tabulated:
-    """Read a filter curve from a CSV, ECSV or FITS table, or from bare columns of numbers.
+    """Read a filter curve from a CSV, ECSV, FITS or VOTable file, or from bare columns of numbers.
 
     Parameters
     ----------
@@ -293,26 +180,46 @@ def read_filter(
         Column by name or by index from 0. The first column may also be a frequency or wavenumber.
     repair : tuple of str
         Repairs that may be made, out of `REPAIRS`.
+    medium : str, optional
+        ``"vacuum"`` or ``"air"``. By default what a key ``medium`` or ``AIRORVAC`` of the file's header says, else vacuum, with a note.
+        Wavelengths in air are turned into vacuum ones for standard air (dry, 15 degrees C, 101325 Pa, 450 ppm CO2), 0.3 to 1.69 um.
 
     Returns
     -------
     Tabulated
+        Its `notes` also say which off-standard spelling of a unit was taken for which; ``"A"``, the ampere, counts as angstrom for a
+        wavelength.
 
     Raises
     ------
-    FileContentError, InputError
+    FileContentError, InputError, UnitsError
         With file, row and column.
+
+    References
+    ----------
+    Ciddor, Appl. Opt. 35, 1566 (1996), eq. 1, doi:10.1364/AO.35.001566.
 
     Warns
     -----
     CurveEndsWarning
         Light may be missing beyond the ends; the message says how much.
     """
-    wavelength, values = read_curve(path, wavelength_unit, transmission_unit, wavelength_column, transmission_column)
-    return Tabulated(wavelength=wavelength, transmission_values=values, repair=repair, origin=str(path))
+    found = read_curve(path, wavelength_unit, transmission_unit, wavelength_column, transmission_column, medium)
+    wavelength, values, remarks = found
+    return Tabulated(wavelength=wavelength, transmission_values=values, repair=repair, origin=str(path), remarks=remarks)
 
 
-FILTER_SHAPES: tuple[type[Any], ...] = (TopHat, Gaussian, Tabulated)
+FILTER_SHAPES: tuple[type[Any], ...] = (
+    TopHat,
+    Gaussian,
+    SuperGaussian,
+    Trapezoid,
+    Lorentzian,
+    MultiCavity,
+    LongPass,
+    ShortPass,
+    Tabulated,
+)
 """The family of filter shapes: controls, setup files and contract tests read it."""
 
-__all__ = ["FILTER_SHAPES", "REPAIRS", "Filter", "Gaussian", "Tabulated", "Tilted", "TopHat", "read_filter"]
+__all__ = ["FILTER_SHAPES", "REPAIRS", "Filter", "Gaussian", "Tabulated", "TopHat", "read_filter"]

@@ -21,6 +21,9 @@ from .sources import Source
 SAMPLES = 8192
 """Default number of cells of a continuum."""
 
+CELLS_PER_PERIOD = 12
+"""A ripple needs so many cells per period for its ghosts to be right to 0.2 %."""
+
 
 @dataclass(frozen=True, kw_only=True, eq=False)
 class Spectrum:
@@ -207,9 +210,9 @@ def detected(source: Source, *filters: Filter, samples: int = SAMPLES) -> Spectr
     Parameters
     ----------
     source : Source
-        `Flat`, `Thermal`, `Diode`, `Lines`.
+        A member of `SOURCE_SHAPES`, or a sum of them.
     *filters : Filter
-        `TopHat`, `Gaussian`, `Tabulated`, `Tilted`; any number, all multiplied.
+        Members of `FILTER_SHAPES` and `TRAIN_SHAPES`; any number, all multiplied.
     samples : int
         Cells of the continuum, spread over the band that all filters share.
 
@@ -225,7 +228,8 @@ def detected(source: Source, *filters: Filter, samples: int = SAMPLES) -> Spectr
     Warns
     -----
     ResolutionWarning
-        The filters' transmission changes by more than 1 % across a line, whose shape then would change.
+        The filters' transmission changes by more than 1 % across a line, whose shape then would change; or a source's ripple is too
+        fine for the grid.
 
     Examples
     --------
@@ -241,7 +245,21 @@ def detected(source: Source, *filters: Filter, samples: int = SAMPLES) -> Spectr
     if not isinstance(source, Source) or isinstance(source, type):
         raise InputError(f"source must be one such as spectra.Thermal; got {source!r}")
     kinks = [np.asarray(source.breakpoints_si)]
-    return _compose(source.rate_si, source.support_si, kinks, source.lines, filters, samples, "photon")
+    light = _compose(source.rate_si, source.support_si, kinks, source.lines, filters, samples, "photon")
+    _warn_if_too_fine(float(getattr(source, "finest_si", np.inf)), light)
+    return light
+
+
+def _warn_if_too_fine(period: float, light: Spectrum) -> None:
+    """Warn where a ripple of the source is finer than the grid shows."""
+    if light.density.size and period < CELLS_PER_PERIOD * light.step_si:
+        enough = int(np.ceil(light.density.size * CELLS_PER_PERIOD * light.step_si / period))
+        warnings.warn(
+            f"the source's ripple has {period / light.step_si:.3g} cells per period, fewer than {CELLS_PER_PERIOD}, and its ghosts come "
+            f"out too low: ask for samples={enough} or more",
+            ResolutionWarning,
+            stacklevel=3,
+        )
 
 
 def _compose(
@@ -282,11 +300,15 @@ def _line_through(line: Line, filters: tuple[Filter, ...]) -> Line:
     """Weaken a line by the filters' transmission at its centre; warn where that is not the whole story."""
     half = 0.5 * line.fwhm_si
     points = line.frequency_si + np.array([0.0, -half, half])
-    passed = np.ones(3)
+    ends = [item.support_si for item in filters]
+    low, high = max((end[0] for end in ends), default=0.0), min((end[1] for end in ends), default=np.inf)
+    inside = (points >= low) & (points <= high)
+    if not np.any(inside):
+        return replace(line, strength=0.0)
+    # one filter's table need not reach what another stops: no filter is asked outside the band that all share
+    passed = inside.astype(float)
     for item in filters:
-        low, high = item.support_si
-        inside = (points >= low) & (points <= high)
-        passed = passed * np.where(inside, item.transmission_si(np.clip(points, low, high)), 0.0)
+        passed = passed * item.transmission_si(np.clip(points, low, high))
     if np.ptp(passed) > 0.01 * np.max(passed):
         warnings.warn(
             f"the filters' transmission changes by {np.ptp(passed) / np.max(passed):.1%} across the line at "

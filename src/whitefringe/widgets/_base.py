@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import logging
+import warnings
 from collections.abc import Callable
 from functools import wraps
 from typing import Any
@@ -11,7 +12,7 @@ import ipywidgets as widgets
 import numpy as np
 import traitlets
 
-from ..errors import WhitefringeError
+from ..errors import WhitefringeError, WhitefringeWarning
 from ._style import LABEL_WIDTH
 from .bench import Bench
 
@@ -100,7 +101,11 @@ def guarded(callback: Callable[..., None]) -> Callable[..., None]:
             if self.silent:
                 return
             try:
-                callback(self, *arguments)
+                with warnings.catch_warnings(record=True) as caught:
+                    warnings.simplefilter("always", WhitefringeWarning)
+                    callback(self, *arguments)
+                if caught:
+                    self.bench.report(f"note: {caught[-1].message}")
             except WhitefringeError as error:
                 self.bench.report(str(error))
                 if self.bench.strict:
@@ -126,9 +131,9 @@ class BenchView(widgets.VBox):
     """
 
     def __init__(self, bench: Bench, children: list[Any], css: str) -> None:
+        super().__init__(children=children)
         self.bench = bench
         self.silent = False
-        super().__init__(children=children)
         self.add_class(css)
         with bench.lock:
             bench.listen(self._bench_changed)
@@ -187,9 +192,9 @@ def close_tree(root: Any) -> None:
         elif isinstance(item, widgets.Widget) and not any(item is other for other in seen):
             seen.append(item)
             pending += [getattr(item, name) for name in item.keys]
-            pending += item.hidden_parts() if isinstance(item, BenchView) else []
+            # a view whose construction failed has no bench, and may lack parts
+            pending += item.hidden_parts() if isinstance(item, BenchView) and "bench" in vars(item) else []
     for item in seen:
-        # a view whose construction failed has no bench yet
         if isinstance(item, BenchView) and "bench" in vars(item):
             item.bench.ignore(item._bench_changed)
         item.unobserve_all()

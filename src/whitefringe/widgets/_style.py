@@ -4,6 +4,7 @@ RECORDED = "#56B4E9"
 FITTED = "#D55E00"
 PREDICTED = "#009E73"
 CURSOR = "#CC79A7"
+AXIS = "#808080"
 
 GOOD, BAD, OPEN = "#009E73", "#D55E00", "#E69F00"
 OUTCOME_COLOURS = {"inside": GOOD, "outside": BAD, "undecided": OPEN, "not measured": OPEN}

@@ -39,6 +39,11 @@ class BenchResults:
     reduction: ScanResult | None
 
 
+def plotted_half_range(results: BenchResults) -> float:
+    """Path difference [um], either way from zero, that plots and cursor cover: two and a half packet widths."""
+    return 2.5 * results.width.to_value(u.um) if results.width is not None else 50 * results.wavelength.to_value(u.um)
+
+
 class Bench:
     """Shared state of a dashboard.
 
@@ -149,7 +154,8 @@ class Bench:
         if self.scan is not None:
             lines += [
                 f"scan = scans.read_scan({self.scan.provenance.get('path', 'scan.ecsv')!r}, {_code(self.setup.layout)})",
-                f"result = scans.reduce_scan(scan, light, expected_contrast={self.setup.expected_contrast:g}, "
+                f"result = scans.reduce_scan(scan, light, definition={self.setup.definition!r}, "
+                f"expected_contrast={self.setup.expected_contrast:g}, "
                 f"tolerances={_code(self.setup.tolerances)})",
             ]
         return "\n".join(lines)
@@ -165,8 +171,6 @@ def _or_none(measure: Callable[[Spectrum], Measured], light: Spectrum) -> Measur
 def _code(shape: Any) -> str:
     """Write a frozen object as the call that makes it; fields that stand at their default are left out."""
     name = type(shape).__name__
-    if name == "Tabulated":
-        return f"spectra.read_filter({shape.origin!r})"
     if name == "Lines":
         return f"spectra.Lines([{', '.join(_code(line) for line in shape.lines)}])"
     area = "scans" if type(shape).__module__.startswith("whitefringe.scans") else "spectra"
@@ -183,6 +187,10 @@ def _same(value: Any, default: Any) -> bool:
 
 
 def _value_code(value: Any) -> str:
+    if isinstance(value, u.Quantity) and value.ndim:
+        return f"u.Quantity({value.value.tolist()!r}, {str(value.unit)!r})"
     if isinstance(value, u.Quantity):
         return f'u.Quantity("{value.value:.12g} {value.unit}")'
+    if isinstance(value, tuple):
+        return f"({', '.join(_value_code(item) for item in value)},)"
     return _code(value) if hasattr(value, "__dataclass_fields__") else repr(value)

@@ -6,9 +6,10 @@ import math
 from typing import Any
 
 import astropy.units as u
+import numpy as np
 
 from .._base import BenchView, NumberRow, guarded
-from ..bench import Bench
+from ..bench import Bench, plotted_half_range
 
 
 class DelayControl(BenchView):
@@ -22,13 +23,9 @@ class DelayControl(BenchView):
     """
 
     def __init__(self, bench: Bench, half_range: u.Quantity | None = None) -> None:
-        width = bench.results.width
-        half = 100.0 if width is None else 2.5 * width.to_value(u.um)
-        if half_range is not None:
-            half = float(half_range.to_value(u.um))
-        half = rounded_up(half)
-        start = float(bench.setup.delay.to_value(u.um))
-        step = rounded_up(half / 500, below=True)
+        self.fixed = None if half_range is None else float(half_range.to_value(u.um))
+        half = self._half(bench)
+        start, step = float(bench.setup.delay.to_value(u.um)), rounded_up(half / 500, below=True)
         self.row = NumberRow(label="delay", unit="µm", low=-half, high=half, step=step, value=start, lock=bench.lock)
         self.row.observe(self._moved, names="value")
         super().__init__(bench, [self.row], "wf-delay-control")
@@ -37,8 +34,23 @@ class DelayControl(BenchView):
     def _moved(self, change: Any) -> None:
         self.bench.update(delay=change["new"] * u.um)
 
+    def _half(self, bench: Bench) -> float:
+        """Half of the slider's range: whole steps, about as far as the packet plot goes."""
+        if self.fixed is not None:
+            return self.fixed
+        half = plotted_half_range(bench.results)
+        step = rounded_up(half / 500, below=True)
+        return float(f"{np.floor(half / step) * step:.10g}")
+
     def refresh(self) -> None:
-        """Show the bench's delay."""
+        """Show the bench's delay; the range follows the packet's width."""
+        half = self._half(self.bench)
+        slider = self.row.slider
+        if slider.max != half:
+            slider.step = rounded_up(half / 500, below=True)
+            slider.min, slider.max = (-half, half) if half > slider.max else (slider.min, half)
+            slider.min = -half
+            self.row.box.step = slider.step
         self.row.value = float(self.bench.setup.delay.to_value(u.um))
 
 

@@ -2,13 +2,27 @@
 
 from __future__ import annotations
 
+from dataclasses import fields, replace
 from typing import Any
 
 import astropy.units as u
 import ipywidgets as widgets
 
-from ...errors import UndefinedWidthError
-from ...spectra import FILTER_SHAPES, SOURCE_SHAPES, Lines, Parameter, Spectrum, Tabulated, parameters_of, read_filter
+from ...errors import InputError, UndefinedWidthError
+from ...spectra import (
+    FILTER_SHAPES,
+    LAMPS,
+    SOURCE_SHAPES,
+    Flat,
+    Lamp,
+    Parameter,
+    Spectrum,
+    Tabulated,
+    bare_of,
+    parameters_of,
+    read_filter,
+    with_bare,
+)
 from ...spectra.measures import half_maximum_edges_si, mean_frequency_si
 from ...units import SPEED_OF_LIGHT
 from .._base import BenchView, NumberRow, guarded
@@ -32,7 +46,8 @@ class ShapeControl(BenchView):
         self._kept: dict[str, Any] = {}
         self.bench = bench
         self._keep(self.current())
-        names = [name for name in self.family if parameters_of(self.family[name]) or name in self._kept or self._has_default(name)]
+        self.family.setdefault(self.current().shape, type(self.current()))  # such as a mirror in the place of a filter
+        names = [name for name in self.family if adjustable(self.family[name]) or name in self._kept or self._has_default(name)]
         self.choice = widgets.Dropdown(
             options=names,
             value=self.current().shape,
@@ -68,16 +83,22 @@ class ShapeControl(BenchView):
             return False
         return True
 
-    def rows_of(self, name: str) -> dict[str, NumberRow]:
-        """Return the rows of a shape's parameters, made when they are first needed."""
+    def rows_of(self, name: str, values: dict[str, float] | None = None) -> dict[str, NumberRow]:
+        """Return the rows of a shape's parameters, made when they are first needed, at once with their values.
+
+        A slider that is made with one value and moved before it is drawn sends the first one back as if a user had moved it.
+        """
         if name not in self.rows:
             self.rows[name] = {}
-            for key, item in parameters_of(self.family[name]).items():
-                unit = f"{item.unit:unicode}"
-                limits = {"low": item.low, "high": item.high, "step": item.step}
-                row = NumberRow(label=item.label, unit=unit, value=item.start, lock=self.bench.lock, **limits)
+            for key, item in adjustable(self.family[name]).items():
+                value = (values or {}).get(key, item.start)
+                unit = f"{item.unit:unicode}" or "1"
+                row = NumberRow(label=item.label, unit=unit, value=value, lock=self.bench.lock, **_limits(item, value))
                 row.observe(self._moved, names="value")
                 self.rows[name][key] = row
+        else:
+            for key, value in (values or {}).items():
+                self.rows[name][key].value = value
         return self.rows[name]
 
     def _keep(self, shape: Any) -> None:
@@ -92,11 +113,21 @@ class ShapeControl(BenchView):
     def _like_now(self, name: str) -> Any:
         """Return a shape with the centre and width of the light as it is now, where it has such parameters."""
         low, high = half_maximum_edges(self.bench.results.light)
-        values = {"centre": 0.5 * (low + high), "width": high - low, "fwhm": high - low}
-        for key, item in parameters_of(self.family[name]).items():
-            row = self.rows_of(name)[key]
-            if key in values and item.unit.is_equivalent(u.m):
-                row.value = row.slider.snapped(values[key].to_value(item.unit))
+        middle, width = 0.5 * (low + high), high - low
+        known = {"centre": middle, "wavelength": middle, "width": width, "fwhm": width}
+        if "centre" not in adjustable(self.family[name]):
+            known["edge"] = middle
+        described = adjustable(self.family[name])
+        values = {
+            key: float(f"{known[key].to_value(item.unit):.4g}")
+            for key, item in described.items()
+            if key in known and item.unit.is_equivalent(u.m)
+        }
+        self.silent = True
+        try:
+            self.rows_of(name, values)
+        finally:
+            self.silent = False
         return self._from_rows(name)
 
     @guarded
@@ -104,9 +135,15 @@ class ShapeControl(BenchView):
         self.put(self._from_rows(self.choice.value))
 
     def _from_rows(self, name: str) -> Any:
-        described = parameters_of(self.family[name])
-        values = {key: self.rows_of(name)[key].value * item.unit for key, item in described.items()}
-        return self.family[name](**values)
+        """Build the shape from its rows; what has no row stays as it was in the shape of this kind that was here last."""
+        described = adjustable(self.family[name])
+        values: dict[str, Any] = {}
+        for key, item in described.items():
+            number = self.rows_of(name)[key].value
+            whole = item.unit == u.dimensionless_unscaled and item.step == 1
+            values[key] = (round(number) if whole else number) if item.unit == u.dimensionless_unscaled else number * item.unit
+        kept = self._kept.get(name)
+        return self.family[name](**values) if kept is None else replace(kept, **values)
 
     def refresh(self) -> None:
         """Show the shape in the bench's setup."""
@@ -114,16 +151,30 @@ class ShapeControl(BenchView):
         self._keep(shape)
         if self.choice.value != shape.shape:
             self.choice.value = shape.shape
-        rows = self.rows_of(shape.shape)
-        for name, row in rows.items():
-            row.value = float(f"{_shown(getattr(shape, name), parameters_of(shape)[name], shape):.10g}")
-        wanted = (*rows.values(), *self.extra(shape.shape))
+        values = {key: float(f"{_shown(getattr(shape, key), item, shape):.10g}") for key, item in adjustable(type(shape)).items()}
+        wanted = (*self.rows_of(shape.shape, values).values(), *self.extra(shape.shape))
         if self.parameters.children != wanted:
             self.parameters.children = wanted
 
     def hidden_parts(self) -> list[Any]:
         """Rows of the shapes that are not chosen."""
         return [row for rows in self.rows.values() for row in rows.values()]
+
+
+def adjustable(cls: type[Any]) -> dict[str, Parameter]:
+    """Return the described fields of a shape that always have a number; what may be left out (None) has no slider."""
+    optional = {item.name for item in fields(cls) if item.default is None}
+    return {name: item for name, item in parameters_of(cls).items() if name not in optional}
+
+
+def _limits(item: Parameter, value: float) -> dict[str, float]:
+    """Range and step of a slider: as described, widened or made finer where the value asks for it."""
+    step = item.step
+    while value > 0 and item.step != 1 and step > value / 20:
+        step /= 10
+    steps = max(1, round((max(item.high, 2 * value) - min(item.low, value)) / step))
+    low = min(item.low, value)
+    return {"low": low, "high": low + steps * step, "step": float(f"{step:.3g}")}
 
 
 def half_maximum_edges(light: Spectrum) -> tuple[u.Quantity, u.Quantity]:
@@ -136,12 +187,16 @@ def half_maximum_edges(light: Spectrum) -> tuple[u.Quantity, u.Quantity]:
     return SPEED_OF_LIGHT / edges[1] * u.m, SPEED_OF_LIGHT / edges[0] * u.m
 
 
-def _shown(value: u.Quantity, item: Parameter, shape: Any) -> float:
-    """Value of a field in its display unit; a width in frequency is turned into one in wavelength at the shape's centre."""
+def _shown(value: Any, item: Parameter, shape: Any) -> float:
+    """Value of a field in its display unit; a width in frequency is turned into one in wavelength at the shape's centre (or edge)."""
+    if not isinstance(value, u.Quantity):
+        return float(value)
     if value.unit.is_equivalent(item.unit):
         return float(value.to_value(item.unit))
-    if item.unit.is_equivalent(u.m) and value.unit.is_equivalent(u.Hz) and value is not getattr(shape, "centre", None):
-        centre = shape.centre.to(u.m, equivalencies=u.spectral())
+    middle = getattr(shape, "centre", getattr(shape, "edge", None))
+    place = value is middle or value is getattr(shape, "end", None)
+    if item.unit.is_equivalent(u.m) and value.unit.is_equivalent(u.Hz) and not place and middle is not None:
+        centre = middle.to(u.m, equivalencies=u.spectral())
         return float((value / centre.to(u.Hz, equivalencies=u.spectral()) * centre).to_value(item.unit))
     return float(value.to_value(item.unit, equivalencies=u.spectral()))
 
@@ -157,6 +212,8 @@ class FilterControl(ShapeControl):
     """
 
     def __init__(self, bench: Bench, index: int = 0) -> None:
+        if not 0 <= index < len(bench.setup.filters):
+            raise InputError(f"index must name one of the bench's filters, 0 to {len(bench.setup.filters) - 1}; got {index}")
         self.index = index
         self.file = widgets.Text(
             description="curve file",
@@ -169,13 +226,13 @@ class FilterControl(ShapeControl):
         super().__init__(bench, FILTER_SHAPES, "filter", "wf-filter-control")
 
     def current(self) -> Any:
-        """Return the filter."""
-        return self.bench.setup.filters[self.index]
+        """Return the filter, without what happens to it in the beam."""
+        return bare_of(self.bench.setup.filters[self.index])
 
     def put(self, shape: Any) -> None:
-        """Replace the filter in the bench."""
+        """Replace the filter in the bench; what happens to it in the beam stays."""
         filters = list(self.bench.setup.filters)
-        filters[self.index] = shape
+        filters[self.index] = with_bare(filters[self.index], shape)
         self.bench.update(filters=tuple(filters))
 
     def extra(self, name: str) -> list[Any]:
@@ -196,6 +253,8 @@ class FilterControl(ShapeControl):
     def _file_named(self, change: Any) -> None:
         if change["new"].strip():
             self.put(read_filter(change["new"].strip()))
+        else:
+            self.file.value = self.current().origin
 
     def refresh(self) -> None:
         """Show the filter, and a table's file."""
@@ -210,9 +269,18 @@ class FilterControl(ShapeControl):
 
 
 class SourceControl(ShapeControl):
-    """Chooses and moves the bench's source. A lamp of lines is shown where the setup has one."""
+    """Chooses and moves the bench's source; a lamp by its element. Sources of tables, lines or sums are shown where the setup has one.
+
+    Parameters
+    ----------
+    bench : Bench
+    """
 
     def __init__(self, bench: Bench) -> None:
+        self.element = widgets.Dropdown(
+            options=LAMPS, description="element", layout={"width": "270px"}, style={"description_width": LABEL_WIDTH}
+        )
+        self.element.observe(self._element_chosen, names="value")
         super().__init__(bench, SOURCE_SHAPES, "source", "wf-source-control")
 
     def current(self) -> Any:
@@ -223,5 +291,27 @@ class SourceControl(ShapeControl):
         """Replace the source in the bench."""
         self.bench.update(source=shape)
 
+    def extra(self, name: str) -> list[Any]:
+        """The choice of elements belongs to the lamp."""
+        return [self.element] if name == Lamp.shape else []
+
     def _has_default(self, name: str) -> bool:
-        return name != Lines.shape
+        return name in (Flat.shape, Lamp.shape)
+
+    def _like_now(self, name: str) -> Any:
+        return Lamp.named(self.element.value) if name == Lamp.shape else super()._like_now(name)
+
+    @guarded
+    def _element_chosen(self, change: Any) -> None:
+        self.put(Lamp.named(change["new"]))
+
+    def refresh(self) -> None:
+        """Show the source, and a lamp's element."""
+        super().refresh()
+        source = self.current()
+        if isinstance(source, Lamp) and self.element.value != source.name:
+            self.element.value = source.name
+
+    def hidden_parts(self) -> list[Any]:
+        """Rows and choice of elements of the shapes that are not chosen."""
+        return [*super().hidden_parts(), self.element]

@@ -9,14 +9,14 @@ import ipywidgets as widgets
 import numpy as np
 from numpy.typing import NDArray
 
-from .._style import FIGURE_MARGIN
+from .._style import AXIS, FIGURE_MARGIN
 
 FloatArray = NDArray[np.float64]
 
 
 def figure(marks: list[Any], x: Any, y: Any, x_label: str, y_label: str, height: int, y_ticks: list[float]) -> bqplot.Figure:
     """Return a figure of lines on two shared scales; ticks on the second where they are told."""
-    common = {"tick_format": "~g", "grid_lines": "dashed"}
+    common = {"tick_format": "~g", "grid_lines": "dashed", "label_color": AXIS}
     axes = [
         bqplot.Axis(scale=x, label=x_label, label_offset="32px", **common),
         bqplot.Axis(scale=y, label=y_label, label_offset="46px", side="left", tick_values=np.array(y_ticks), **common),

@@ -4,16 +4,18 @@ from __future__ import annotations
 
 import astropy.units as u
 import bqplot
+import ipywidgets as widgets
 import numpy as np
 
 from ...coherence import self_coherence_si
 from ...units import SPEED_OF_LIGHT
 from .._base import BenchView
 from .._style import CURSOR, PREDICTED, RECORDED
-from ..bench import Bench
+from ..bench import Bench, plotted_half_range
 from ._figures import draw, figure, legend, line, span
 
-POINTS = 2001
+POINTS, MOST = 2001, 8001
+PER_FRINGE, FEWEST_PER_FRINGE = 24, 8
 
 
 class PacketPlot(BenchView):
@@ -38,7 +40,8 @@ class PacketPlot(BenchView):
         ticks = [-1.0, -0.5, 0.0, 0.5, 1.0]
         self.figure = figure(marks, self.x, self.y, "path difference [µm]", "degree of coherence γ", height, ticks)
         self._drawn: object = None
-        super().__init__(bench, [names, self.figure], "wf-packet-plot")
+        self.note = widgets.HTML()
+        super().__init__(bench, [names, self.figure, self.note], "wf-packet-plot")
 
     def refresh(self) -> None:
         """Redraw the curves when the light has changed, the cursor always."""
@@ -50,10 +53,12 @@ class PacketPlot(BenchView):
 
     def _draw_curves(self) -> None:
         results = self.bench.results
-        width = results.width
-        half = 2.5 * width.to_value(u.um) if width is not None else 50 * results.wavelength.to_value(u.um)
-        opd = np.linspace(-half, half, POINTS)
+        half = plotted_half_range(results)
+        fringes = 2 * half / results.wavelength.to_value(u.um)
+        opd = np.linspace(-half, half, int(np.clip(PER_FRINGE * fringes, POINTS, MOST)) | 1)
         gamma = self_coherence_si(results.light, opd * 1e-6 / SPEED_OF_LIGHT)
         span(self.x, -half, half)
-        draw(self.fringes, opd, gamma.real)
+        fine = opd.size >= FEWEST_PER_FRINGE * fringes
+        draw(self.fringes, opd, gamma.real if fine else np.full(opd.size, np.nan))
+        self.note.value = "" if fine else "the fringes are too many to be drawn"
         draw(self.contrast, opd, np.abs(gamma))

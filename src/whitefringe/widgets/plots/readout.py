@@ -38,7 +38,7 @@ class Readout(BenchView):
         opd = float(delay.to_value(u.um))
         lag = opd * 1e-6 / SPEED_OF_LIGHT * 1e15
         return (
-            f"<div>delay <b>{opd:.3f} µm</b> ({lag:.3f} fs): contrast <b>{abs(gamma):.4f}</b>, phase "
+            f"<div>delay <b>{opd:.3f} µm</b> ({lag:.3f} fs): |γ| <b>{abs(gamma):.4f}</b>, phase "
             f"{np.degrees(-np.angle(gamma)) + 0.0:.1f}°</div>"
         )
 
