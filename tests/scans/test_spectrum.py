@@ -3,9 +3,12 @@
 import astropy.units as u
 import numpy as np
 import pytest
+from scipy.signal.windows import hann
 
 from whitefringe import spectra
-from whitefringe.scans import spectrum_from_scan
+from whitefringe.errors import NoFringeError
+from whitefringe.scans import Scan, spectrum_from_scan
+from whitefringe.scans.spectrum import HANN_FREQUENCY_LOSS
 from whitefringe.units import STEP
 
 FIRST_NM, SECOND_NM = 579.23, 577.12
@@ -119,3 +122,25 @@ def test_without_a_scale_frequencies_are_per_step(two_lines, scan_of):
 def test_passes_scale_the_wavelength(two_lines, scan_of):
     doubled = spectrum_from_scan(scan_of(PATH / 2, two_lines(), passes=2))
     assert doubled.lines[0].wavelength.to_value(u.nm) == pytest.approx(FIRST_NM, abs=0.01)
+
+
+def test_what_the_window_costs_in_frequency():
+    # for a windowed periodogram: sum w^2 n^2 sum n^2 / (sum w n^2)^2 about the middle, here for a Hann window
+    n = np.arange(4000) - 1999.5
+    w = hann(n.size, sym=False)
+    loss = np.sum(w**2 * n**2) * np.sum(n**2) / np.sum(w * n**2) ** 2
+    assert loss == pytest.approx(HANN_FREQUENCY_LOSS, abs=0.005)
+
+
+def test_a_line_above_the_limit_is_missed_in_one_case_of_twenty_at_most():
+    x = np.arange(1000.0)
+    missed = []
+    for seed in range(300):
+        rng = np.random.default_rng(seed)
+        amplitude = 0.0125
+        counts = 1e4 * (1 + amplitude * np.cos(2 * np.pi * 0.11 * x + rng.uniform(0, 6)) + 0.03 * rng.normal(size=x.size))
+        try:
+            spectrum_from_scan(Scan(position=x * STEP, signals={"signal": counts}))
+        except NoFringeError as error:
+            missed.append(error.upper_limit < amplitude)
+    assert sum(missed) <= 15 + 4 * np.sqrt(15)

@@ -173,6 +173,8 @@ def _row_of_fault(lines: list[str]) -> str:
 def _read_csv(path: Path) -> Table:
     from astropy.io import ascii as text_tables
 
+    if ";" in _first_line(path):
+        raise FileContentError(f"{path}: columns separated by semicolons; save the table with commas, and points in the numbers")
     try:
         table = text_tables.read(path, format="csv", comment=r"\s*#", encoding="utf-8-sig", fast_reader=False)
     except Exception as error:  # the reader raises several classes, some of them private

@@ -32,7 +32,7 @@ MEAN_SHARE = 1 / 6
 
 METHOD = "greatest of the Hann-windowed spectrum, lines separated; error from white noise alone"
 
-HANN_FREQUENCY_LOSS = 2.35
+HANN_FREQUENCY_LOSS = 2.343
 """Variance of a line's frequency with a Hann window over that without (sum w^2 n^2 sum n^2 / (sum w n^2)^2 about its middle)."""
 
 
@@ -93,7 +93,7 @@ def spectrum_from_scan(scan: Scan) -> ScanSpectrum:
 
     Notes
     -----
-    Uncertainties are those of a sinusoid in white noise (Kay 1993, ex. 3.14: var f = 12 / [(2 pi)^2 eta N (N^2 - 1)]) times 2.35 for
+    Uncertainties are those of a sinusoid in white noise (Kay 1993, ex. 3.14: var f = 12 / [(2 pi)^2 eta N (N^2 - 1)]) times 2.343 for
     the window. They do not hold errors of the path axis, which common practice finds to be far greater on a real stage.
     """
     even = even_scan(scan)

@@ -101,7 +101,8 @@ def _with_unit(column: Any, stated: Any, argument: str, path: Any, default: Any)
         raise UnitsError(f"{path}: column {column.name!r} is in {header} by its header, but {argument}={stated} was stated")
     unit = stated if stated is not None else header if header is not None else default
     if unit is None:
-        raise UnitsError(f"{path}: column {column.name!r} has no unit in the header; state it, for example {argument}=u.nm")
+        advice = f'state it, for example {argument}=u.nm (in a setup file: {argument} = "nm")'
+        raise UnitsError(f"{path}: column {column.name!r} has no unit in the header; {advice}")
     return u.Quantity(np.asarray(column.value if hasattr(column, "value") else column, dtype=float), unit)
 
 

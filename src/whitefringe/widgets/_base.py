@@ -50,7 +50,7 @@ class NumberRow(widgets.HBox):
 
     def __init__(self, *, label: str, unit: str, low: float, high: float, step: float, value: float, lock: Any) -> None:
         self._lock = lock
-        text = f"{label} [{unit}]"
+        text = label if unit == "1" else f"{label} [{unit}]"
         self.slider = GridSlider(
             min=low, max=high, step=step, value=value, readout=False, layout={"width": "190px"}, style={"description_width": "0px"}
         )

@@ -58,10 +58,11 @@ class ChannelControl(BenchView):
 
 def _described(channels: ChannelSet) -> str:
     first, last = channels[0], channels[len(channels) - 1]
+    lengths = [channel.coherence_length.value for channel in channels]
     words = [
         f"centres {first.centre.value:.4f} to {last.centre.value:.4f}",
         f"widths {first.width.value:.4g} to {last.width.value:.4g}",
-        f"coherence length {first.coherence_length.value:.4g} each (bandwidth)",
+        f"coherence length {min(lengths):.4g} to {max(lengths):.4g} (bandwidth)",
     ]
     if len(channels) > 1:
         words.append(f"group-delay ambiguity {channels.ambiguity.value:.4g}")
