@@ -71,3 +71,22 @@ def test_a_picture_is_drawn(bench, tmp_path, ending):
 def test_faults_end_with_two(bench, capsys, options, message):
     assert main(["light", "--setup", bench, *options]) == 2
     assert message in capsys.readouterr().err
+
+
+LASER = """
+[source]
+shape = "multimode-laser"
+wavelength = "633 nm"
+cavity_length = "15 cm"
+gain_fwhm = "1.5 GHz"
+"""
+
+
+@pytest.mark.parametrize("command", [["light", "--range", "1 m"], ["predict"]])
+def test_a_laser_brings_one_caution_line(tmp_path, capsys, command):
+    (tmp_path / "laser.toml").write_text(LASER, encoding="utf-8")
+    assert main([*command, "--setup", str(tmp_path / "laser.toml")]) == 0
+    out = capsys.readouterr().out
+    assert out.count("IEC 60825-1") == 1
+    assert "local laser safety officer decides" in out
+    assert "infrared beams give no warning" in out

@@ -116,6 +116,7 @@ def _measure(options: argparse.Namespace) -> int:
         console.print(_comparison_table(result.comparisons))
         for note in result.notes:
             console.print(f"note: {note}", soft_wrap=True)
+        _print_caution(console, setup)
         console.print("verdict:", Text(verdict, style=STYLES[verdict]))
     return EXIT[verdict]
 
@@ -130,7 +131,9 @@ def _predict(options: argparse.Namespace) -> int:
         numbers = {name: _json_of(value) for name, value in prediction.rows}
         print(json.dumps({"setup": setup.name, "prediction": numbers}, indent=2))
     else:
-        Console(markup=False, emoji=False, highlight=False).print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
+        console = Console(markup=False, emoji=False, highlight=False)
+        console.print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
+        _print_caution(console, setup)
     return 0
 
 
@@ -158,9 +161,15 @@ def _light(options: argparse.Namespace) -> int:
     console.print(_results_table(f"light: {setup.name}", rows))
     console.print(f"false packets up to {reach:.6g} either way, contrast above {options.above:g}:")
     console.print(_packets_table(packets))
+    _print_caution(console, setup)
+    return 0
+
+
+def _print_caution(console: Console, setup: Any) -> None:
+    from .setup import caution_of
+
     if caution_of(setup):
         console.print(Text(caution_of(setup), style="bold yellow"), soft_wrap=True)
-    return 0
 
 
 def _length(text: str) -> Any:

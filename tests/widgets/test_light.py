@@ -5,8 +5,8 @@ import numpy as np
 import pytest
 
 from whitefringe import coherence, spectra
-from whitefringe.errors import InputError
-from whitefringe.widgets import Bench, ChannelControl, FalsePacketTable, SpectrumPlot
+from whitefringe.errors import InputError, UndefinedWidthError
+from whitefringe.widgets import Bench, ChannelControl, FalsePacketTable, FilterControl, SourceControl, SpectrumPlot
 
 from .conftest import living_widgets
 
@@ -86,3 +86,34 @@ def test_closing_frees_all(light_bench):
         view.close()
     assert living_widgets() == before
     assert light_bench._listeners == []
+
+
+def test_a_laser_brings_its_caution_and_a_lamp_its_element(light_bench):
+    light_bench.update(filters=())
+    with SourceControl(light_bench) as control:
+        control.choice.value = "multimode-laser"
+        assert control.caution in control.parameters.children
+        assert "IEC 60825-1" in control.caution.value
+        control.row("cavity_length").value = 20
+        assert light_bench.setup.source.cavity_length == 20 * u.cm
+        control.choice.value = "lamp"
+        assert control.caution not in control.parameters.children
+        control.element.value = "sodium"
+        assert light_bench.setup.source.name == "sodium"
+
+
+@pytest.mark.parametrize("definition", [item.name for item in coherence.COHERENCE_DEFINITIONS])
+@pytest.mark.parametrize("shape", [cls.shape for cls in spectra.FILTER_SHAPES if spectra.parameters_of(cls)])
+def test_every_filter_shape_has_its_coherence_length_or_a_reason(light_bench, shape, definition):
+    with FilterControl(light_bench) as control:
+        control.choice.value = shape
+        assert light_bench.setup.filters[0].shape == shape
+        try:
+            answer = coherence.coherence_length(light_bench.results.light, definition)
+        except UndefinedWidthError as reason:
+            answer = str(reason)
+        if isinstance(answer, str):
+            assert definition == "first-null"
+            assert "use another definition" in answer
+        else:
+            assert answer.value > 0

@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import fields, replace
+from html import escape
 from typing import Any
 
 import astropy.units as u
 import ipywidgets as widgets
 
 from ...errors import InputError, UndefinedWidthError
+from ...setup import caution_of
 from ...spectra import (
     FILTER_SHAPES,
     LAMPS,
@@ -281,6 +283,7 @@ class SourceControl(ShapeControl):
             options=LAMPS, description="element", layout={"width": "270px"}, style={"description_width": LABEL_WIDTH}
         )
         self.element.observe(self._element_chosen, names="value")
+        self.caution = widgets.HTML()
         super().__init__(bench, SOURCE_SHAPES, "source", "wf-source-control")
 
     def current(self) -> Any:
@@ -292,8 +295,10 @@ class SourceControl(ShapeControl):
         self.bench.update(source=shape)
 
     def extra(self, name: str) -> list[Any]:
-        """The choice of elements belongs to the lamp."""
-        return [self.element] if name == Lamp.shape else []
+        """The choice of elements belongs to the lamp, the caution line to what can hurt."""
+        words = caution_of(self.bench.setup)
+        self.caution.value = f"<div role='note' style='max-width:470px;line-height:1.4'>⚠ <b>{escape(words)}</b></div>"
+        return ([self.element] if name == Lamp.shape else []) + ([self.caution] if words else [])
 
     def _has_default(self, name: str) -> bool:
         return name in (Flat.shape, Lamp.shape)
@@ -313,5 +318,5 @@ class SourceControl(ShapeControl):
             self.element.value = source.name
 
     def hidden_parts(self) -> list[Any]:
-        """Rows and choice of elements of the shapes that are not chosen."""
-        return [*super().hidden_parts(), self.element]
+        """Rows, choice of elements and caution of the shapes that are not chosen."""
+        return [*super().hidden_parts(), self.element, self.caution]

@@ -7,7 +7,7 @@ from html import escape
 import ipywidgets as widgets
 
 from ...scans import Scan
-from ...setup import Setup, caution_of
+from ...setup import Setup
 from .._base import BenchView
 from .._style import BAD
 from ..bench import Bench
@@ -33,12 +33,11 @@ class BenchPanel(BenchView):
         self.source = SourceControl(bench)
         self.filter = FilterControl(bench) if bench.setup.filters else None
         self.beam = BeamControl(bench) if bench.setup.filters else None
-        self.caution = widgets.HTML()
         self.delay = DelayControl(bench)
         self.packet = PacketPlot(bench)
         self.scan = ScanPlot(bench)
         self.readout = Readout(bench)
-        controls = [part for part in (self.source, self.caution, self.filter, self.beam, self.delay) if part is not None]
+        controls = [part for part in (self.source, self.filter, self.beam, self.delay) if part is not None]
         # everything wraps on a narrow page; nothing shrinks below what it needs
         wrap = {"flex_flow": "row wrap"}
         top = widgets.HBox([widgets.VBox(controls, layout={"flex": "0 0 490px"}), self.readout], layout=wrap)
@@ -55,7 +54,6 @@ class BenchPanel(BenchView):
         kept = "" if problem.startswith("note: ") else "; the last good state is shown"
         alert = f"<div role='alert' style='color:{BAD}'>⚠ {escape(problem)}{kept}</div>"
         self.status.value = name + (alert if problem else "")
-        self.caution.value = f"<div style='max-width:470px;line-height:1.4'><b>{escape(caution_of(self.bench.setup))}</b></div>"
 
     def as_code(self) -> str:
         """Return a script that computes what the panel shows."""
