@@ -63,7 +63,6 @@ def test_a_picture_is_drawn(bench, tmp_path, ending):
     [
         (["--range", "long"], "--range must be a length such as \"1 m\"; got 'long'"),
         (["--range", "3 s"], '--range must be a length such as "1 m"'),
-        (["--range", "100 m"], "delay_range is too long for this light"),
         (["--above", "2"], "above must be between 0 and 1"),
         (["--plot", "light.doc"], "a picture's name must end in .png, .svg, .pdf"),
     ],

@@ -123,13 +123,13 @@ def _measure(options: argparse.Namespace) -> int:
 
 def _predict(options: argparse.Namespace) -> int:
     from .fringes import predict_packet
-    from .setup import Setup
+    from .setup import Setup, caution_of
 
     setup = Setup.read(options.setup)
     prediction = predict_packet(setup.light, setup.definition)
     if options.json:
         numbers = {name: _json_of(value) for name, value in prediction.rows}
-        print(json.dumps({"setup": setup.name, "prediction": numbers}, indent=2))
+        print(json.dumps({"setup": setup.name, "prediction": numbers, "caution": caution_of(setup)}, indent=2))
     else:
         console = Console(markup=False, emoji=False, highlight=False)
         console.print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
@@ -191,7 +191,7 @@ def _packets_table(packets: Sequence[Any]) -> Table:
     table = Table()
     table.add_column("path difference", justify="right")
     table.add_column("contrast", justify="right")
-    for packet in sorted(packets, key=lambda packet: -packet.height)[:MOST_PACKETS]:
+    for packet in sorted(packets, key=lambda packet: (-round(packet.height, 6), packet.opd))[:MOST_PACKETS]:
         table.add_row(f"{packet.opd:.6g}", f"{packet.height:.4f}")
     if len(packets) > MOST_PACKETS:
         table.caption = f"the {MOST_PACKETS} highest of {len(packets)}; --json lists all"
@@ -233,6 +233,8 @@ def _comparison_table(comparisons: Sequence[Any]) -> Table:
 
 
 def _measure_json(scan: Any, setup: Any, result: Any) -> dict[str, Any]:
+    from .setup import caution_of
+
     comparisons = [
         {
             "name": item.name,
@@ -253,6 +255,7 @@ def _measure_json(scan: Any, setup: Any, result: Any) -> dict[str, Any]:
         "samples_per_fringe": result.samples_per_fringe,
         "comparisons": comparisons,
         "notes": list(result.notes),
+        "caution": caution_of(setup),
         "verdict": str(result.verdict),
     }
 

@@ -264,7 +264,10 @@ class Setup:
             )
 
     def write(self, path: str | Path, *, overwrite: bool = False) -> tuple[Path, ...]:
-        """Write a setup file that `read` reads again, tables as ECSV files beside it; see `setup_writer.write_setup`."""
+        """Write a setup file that `read` reads again, filter curves as ECSV files beside it.
+
+        A tabulated source and a sum of sources are refused; see `setup_writer.write_setup`.
+        """
         from .setup_writer import write_setup
 
         return write_setup(self, path, overwrite=overwrite)

@@ -24,6 +24,9 @@ PER_CYCLE = 16
 TOUCH = 0.03
 """A sampled minimum this far above a level may reach it between two delays: 1 - cos(pi / PER_CYCLE) = 0.02."""
 
+BEATS = 4
+"""Periods of the slowest beat of two lines that are searched."""
+
 MOST_DELAYS = 4_000_000
 """A search ends here at the latest."""
 
@@ -53,21 +56,29 @@ def runs(spectrum: Spectrum, reach: float | None = None) -> Iterator[tuple[Float
     if fast == 0:
         raise UndefinedWidthError("a monochromatic line never loses coherence")
     step = 1 / (PER_CYCLE * fast)
+    if not widths:
+        reach = min(reach or np.inf, grid_reach(spectrum))
     if reach is None:
-        reach = min(max([64 / fast, *(4 / width for width in widths if width > 0)]), MOST_DELAYS * step)
+        reach = min(_far_enough(spectrum, widths, fast), MOST_DELAYS * step)
     elif reach > MOST_DELAYS * step:
         raise InputError(
             f"delay_range is too long for this light, whose fastest beat asks for steps of {step * SPEED_OF_LIGHT:.3g} m: "
             f"at most {MOST_DELAYS * step * SPEED_OF_LIGHT:.3g} m"
         )
-    if not widths:
-        reach = min(reach, grid_reach(spectrum))
     most = int(reach / step) + 1
     first, length = 0, 1025
     while first < most:
         delays = np.asarray(np.arange(first, min(first + length, most + 2)) * step, dtype=float)
         yield delays, contrast_at(spectrum, delays)
         first, length = first + length - 2, 16_384
+
+
+def _far_enough(spectrum: Spectrum, widths: list[float], fast: float) -> float:
+    """Delay [s] beyond which |gamma| holds nothing new: of the continuum's grid, of the lines' widths, of the slowest beat."""
+    places = np.unique([line.frequency_si for line in spectrum.lines if line.strength > 0])
+    slowest = [BEATS / float(np.min(np.diff(places)))] if places.size > 1 else []
+    grid = [grid_reach(spectrum)] if spectrum.density.size else []
+    return max([64 / fast, *grid, *slowest, *(4 / width for width in widths if width > 0)])
 
 
 def first_below(spectrum: Spectrum, level: float) -> float:

@@ -7,12 +7,11 @@ from typing import Any
 
 import astropy.units as u
 import numpy as np
-from scipy.optimize import minimize_scalar
 
 from ..errors import InputError
 from ..results import Measured
 from ..spectra import Spectrum
-from ..units import SPEED_OF_LIGHT, as_delay_si
+from ..units import SPEED_OF_LIGHT, FloatArray, as_delay_si
 from ._search import contrast_at, first_below, runs
 
 
@@ -86,12 +85,12 @@ def false_packets(spectrum: Spectrum, delay_range: Any, above: float = 0.05) -> 
     Raises
     ------
     InputError
-        A range or height that cannot be, or a range of more than 4 million steps of the spectrum's fastest beat.
+        A range or height that cannot be, or, with lines, a range of more than 4 million steps of the spectrum's fastest beat.
 
     Notes
     -----
     |gamma| is sampled 16 times per period of the fastest beat that the spectrum's extent allows and each maximum is refined. Beyond the
-    delay that the continuum's grid resolves, only lines are searched.
+    delay that the continuum's grid resolves (half of one over its step), only lines are searched; without lines the search ends there.
 
     References
     ----------
@@ -117,16 +116,20 @@ def false_packets(spectrum: Spectrum, delay_range: Any, above: float = 0.05) -> 
         inner = contrast[1:-1]
         # a sampled maximum lies at most 1 - cos(pi / 16) = 2 % below the true one
         tops = np.flatnonzero((inner > contrast[:-2]) & (inner >= contrast[2:]) & (inner > 0.97 * above)) + 1
-        for top in tops:
-            place, height = _maximum(spectrum, float(delays[top - 1]), float(delays[top + 1]))
-            if height >= above and place <= reach:
-                found.append(FalsePacket(opd=(place * SPEED_OF_LIGHT * u.m).to(u.um), height=height))
+        places, heights = _maxima(spectrum, delays[tops], float(delays[1] - delays[0]))
+        keep = (heights >= above) & (places <= reach)
+        found += [
+            FalsePacket(opd=(place * SPEED_OF_LIGHT * u.m).to(u.um), height=float(height))
+            for place, height in zip(places[keep], heights[keep], strict=True)
+        ]
     return tuple(found)
 
 
-def _maximum(spectrum: Spectrum, low: float, high: float) -> tuple[float, float]:
-    def depth(delay: float) -> float:
-        return -float(contrast_at(spectrum, np.array([delay]))[0])
-
-    result = minimize_scalar(depth, bounds=(low, high), method="bounded", options={"xatol": 1e-10 * high})
-    return float(result.x), -float(result.fun)
+def _maxima(spectrum: Spectrum, places: FloatArray, step: float) -> tuple[FloatArray, FloatArray]:
+    """Refine sampled maxima, all at once: parabolas through three points that close in by a factor of eight a round."""
+    for _ in range(4 if places.size else 0):
+        before, here, after = (contrast_at(spectrum, places + shift) for shift in (-step, 0.0, step))
+        bend = np.minimum(before - 2 * here + after, -1e-300)
+        places = places + step * np.clip(0.5 * (before - after) / bend, -1.0, 1.0)
+        step /= 8
+    return places, contrast_at(spectrum, places) if places.size else places

@@ -21,14 +21,24 @@ def mean_frequency_si(spectrum: Spectrum) -> float:
 
 
 def mean_frequency(spectrum: Spectrum) -> Measured:
-    """Mean frequency: int nu S(nu) dnu / int S(nu) dnu, lines included."""
+    """Mean frequency: int nu S(nu) dnu / int S(nu) dnu, lines included.
+
+    References
+    ----------
+    Mandel & Wolf, sec. 4.3.3 (first moment of the spectrum).
+    """
     return Measured(
         value=mean_frequency_si(spectrum) * u.Hz, definition=f"mean frequency, {spectrum.weight}-weighted", method="sum over cells"
     )
 
 
 def mean_wavelength(spectrum: Spectrum) -> Measured:
-    """Vacuum wavelength of the mean frequency, c / mean frequency: the fringe period at zero path difference."""
+    """Vacuum wavelength of the mean frequency, c / mean frequency: the fringe period at zero path difference.
+
+    References
+    ----------
+    Goodman, Statistical Optics, 2nd ed., sec. 5.1: the phase of gamma turns at the mean frequency at zero delay.
+    """
     value = (SPEED_OF_LIGHT / mean_frequency_si(spectrum) * u.m).to(u.um)
     return Measured(value=value, definition=f"c / mean frequency, {spectrum.weight}-weighted", method="sum over cells")
 
@@ -142,7 +152,11 @@ def full_width_half_maximum(spectrum: Spectrum, axis: str = "frequency") -> Meas
     spectrum : Spectrum
     axis : str
         ``"frequency"``, or ``"wavelength"``: the distance of the same two points in vacuum wavelength. The density itself stays
-        one per hertz.
+        one per hertz, so for a filter's own width in wavelength put it before ``Flat()``, not ``Flat(per="wavelength")``.
+
+    References
+    ----------
+    Born & Wolf, 7th ed., sec. 7.5.8; the outermost points are common practice for curves with structure.
     """
     low, high = half_maximum_edges_si(spectrum)
     if axis == "wavelength":
@@ -154,7 +168,12 @@ def full_width_half_maximum(spectrum: Spectrum, axis: str = "frequency") -> Meas
 
 
 def equivalent_width(spectrum: Spectrum) -> Measured:
-    """Equivalent width: int S dnu / max S, of the continuum (Tokunaga & Vacca 2005, appendix, there per wavelength)."""
+    """Equivalent width: int S dnu / max S, of the continuum.
+
+    References
+    ----------
+    Tokunaga & Vacca, PASP 117, 421 (2005), appendix, there per wavelength; Bracewell, 3rd ed., ch. 8.
+    """
     if not spectrum.density.size:
         raise UndefinedWidthError("light of lines only has no equivalent width: there is no continuum")
     value = spectrum.continuum_rate / float(np.max(spectrum.density)) * u.Hz
@@ -167,7 +186,12 @@ def equivalent_width(spectrum: Spectrum) -> Measured:
 
 
 def resolving_power(spectrum: Spectrum) -> Measured:
-    """Resolving power: mean frequency over full width at half maximum."""
+    """Resolving power: mean frequency over full width at half maximum.
+
+    References
+    ----------
+    Born & Wolf, 7th ed., sec. 7.6.3, with the width of the band in the place of the least difference.
+    """
     low, high = half_maximum_edges_si(spectrum)
     value = mean_frequency_si(spectrum) / (high - low) * u.dimensionless_unscaled
     return Measured(value=value, definition="resolving power: mean frequency / full width at half maximum", method="ratio")
