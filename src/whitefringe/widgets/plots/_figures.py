@@ -55,6 +55,20 @@ def span(scale: bqplot.LinearScale, low: float, high: float) -> None:
         scale.min, scale.max = low - margin, high + margin
 
 
+def round_ticks(low: float, high: float, most: int = 6) -> FloatArray:
+    """Return at most `most` + 1 round numbers between two ends: for labels too long for bqplot's own choice.
+
+    Examples
+    --------
+    >>> round_ticks(0.58914, 0.58977).round(6).tolist()
+    [0.5892, 0.5894, 0.5896]
+    """
+    raw = (high - low) / most
+    scale = 10.0 ** np.floor(np.log10(raw))
+    step = scale * next(digit for digit in (1, 2, 5, 10) if digit * scale >= raw)
+    return np.asarray(np.arange(np.ceil(low / step), np.floor(high / step) + 1) * step)
+
+
 def draw(mark: bqplot.Lines, x: NDArray[np.float64], y: NDArray[np.float64]) -> None:
     """Give a line new points in one message; new arrays each time, since equal ones are not sent."""
     with mark.hold_sync():

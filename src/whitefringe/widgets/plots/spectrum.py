@@ -10,7 +10,7 @@ from ...units import SPEED_OF_LIGHT
 from .._base import BenchView
 from .._style import CURSOR, FITTED, PREDICTED
 from ..bench import Bench
-from ._figures import FloatArray, draw, figure, legend, line, span
+from ._figures import FloatArray, draw, figure, legend, line, round_ticks, span
 
 POINTS = 1500
 
@@ -47,6 +47,7 @@ class SpectrumPlot(BenchView):
     def _draw(self, light: Spectrum, channels: int) -> None:
         low, high = _shown_range(light)
         span(self.x, low, high)
+        self.figure.axes[0].tick_values = round_ticks(low, high)
         draw(self.continuum, *_continuum(light))
         draw(self.stems, *_stems(light))
         draw(self.edges, *_channel_edges(light, channels))
