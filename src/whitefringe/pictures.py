@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 
@@ -52,12 +53,12 @@ def draw_light(setup: Setup, path: str | Path, half_range_um: float) -> Path:
     return path
 
 
-def _draw_spectrum(axes: object, light: Spectrum) -> None:
+def _draw_spectrum(axes: Any, light: Spectrum) -> None:
     if light.density.size:
         wavelength = SPEED_OF_LIGHT / light.frequency_si * 1e6
-        axes.plot(wavelength, light.density / np.max(light.density), color="#009E73", label="continuum")  # type: ignore[attr-defined]
+        axes.plot(wavelength, light.density / np.max(light.density), color="#009E73", label="continuum")
     strongest = max((item.strength for item in light.lines), default=1.0)
     for item in light.lines:
         place = SPEED_OF_LIGHT / item.frequency_si * 1e6
-        axes.plot([place, place], [0, item.strength / strongest], color="#D55E00")  # type: ignore[attr-defined]
-    axes.set(xlabel="vacuum wavelength [µm]", ylabel="photon rate per hertz, relative", ylim=(0, 1.1))  # type: ignore[attr-defined]
+        axes.plot([place, place], [0, item.strength / strongest], color="#D55E00")
+    axes.set(xlabel="vacuum wavelength [µm]", ylabel="photon rate per hertz, relative", ylim=(0, 1.1))

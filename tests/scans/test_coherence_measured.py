@@ -7,6 +7,7 @@ import pytest
 from whitefringe import coherence, demo, spectra
 from whitefringe.errors import PacketCutOffError, UndefinedWidthError
 from whitefringe.scans import reduce_scan
+from whitefringe.scans._coherence import DEFINITIONS_MEASURED
 
 DEFINITIONS = [item.name for item in coherence.COHERENCE_DEFINITIONS]
 
@@ -63,3 +64,7 @@ def test_a_packet_that_does_not_fall_to_1_over_e(lamp_scan):
     scan = lamp_scan(np.arange(-60, 10.4, 0.2))
     with pytest.raises((UndefinedWidthError, PacketCutOffError), match=r"does not fall to (0.368 of its peak|half)"):
         reduce_scan(scan, definition="e-fold")
+
+
+def test_measured_and_predicted_definitions_have_the_same_names():
+    assert list(DEFINITIONS_MEASURED) == [item.name for item in coherence.COHERENCE_DEFINITIONS]

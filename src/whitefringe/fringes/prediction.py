@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
+from functools import partial
 
 import astropy.units as u
 
@@ -75,7 +77,7 @@ def predict_packet(light: Spectrum, definition: str = DEFAULT_DEFINITION) -> Pac
         rows.append((name, _or_reason(measure, light)))
     names = [item.name for item in COHERENCE_DEFINITIONS]
     for name in sorted(names, key=lambda name: (name != definition, names.index(name))):
-        rows.append((f"coherence length ({name})", _or_reason(lambda s, name=name: coherence_length(s, name), light)))
+        rows.append((f"coherence length ({name})", _or_reason(partial(coherence_length, definition=name), light)))
     step = (wavelength.value / SAMPLES_PER_FRINGE).to(u.nm)
     rows.append(("longest step", Measured(value=step, definition=f"path difference, {SAMPLES_PER_FRINGE} samples per fringe")))
     return PacketPrediction(rows=tuple(rows))
@@ -109,8 +111,8 @@ def _in_fringes(width: Measured, wavelength: Measured) -> Measured:
     return Measured(value=value, definition="packet width over fringe period", method="ratio")
 
 
-def _or_reason(measure: object, light: Spectrum) -> Measured | str:
+def _or_reason(measure: Callable[[Spectrum], Measured], light: Spectrum) -> Measured | str:
     try:
-        return measure(light)  # type: ignore[operator,no-any-return]
+        return measure(light)
     except UndefinedWidthError as reason:
         return str(reason)

@@ -12,6 +12,13 @@ SHARE = 1 / 12
 """The limit holds for a packet whose full width is this share of the scan, or more."""
 
 ONE_SIDED_95 = 1.645
+"""Standard normal quantile at 95 %."""
+
+GAUSSIAN_AREA = float(np.sqrt(np.pi / (8 * np.log(2))))
+"""int e^2 dx over w, for a Gaussian envelope e of full width w: 0.7527."""
+
+GAUSSIAN_BINS = 4 * np.log(2) / np.pi
+"""Full width of that envelope's amplitude spectrum, times w: 0.8825 (transform of a Gaussian)."""
 
 
 def missed_contrast(relative: FloatArray) -> float:
@@ -29,10 +36,10 @@ def missed_contrast(relative: FloatArray) -> float:
     power = np.abs(np.fft.rfft(relative)) ** 2
     variance = float(np.median(noise_floor(power)[FEWEST_FRINGES:])) / relative.size
     widths, threshold = trials(power.size)
-    bins = min(max(2 ** int(np.ceil(np.log2(0.9 / SHARE))), 1), widths[-1])
+    bins = min(max(2 ** int(np.ceil(np.log2(GAUSSIAN_BINS / SHARE))), 1), widths[-1])
 
     def shortfall(contrast: float) -> float:
-        signal = contrast**2 / (4 * variance) * 0.7527 * SHARE * relative.size
+        signal = contrast**2 / (4 * variance) * GAUSSIAN_AREA * SHARE * relative.size
         total = max(bins + signal - ONE_SIDED_95 * np.sqrt(bins + 2 * signal), bins)
         return float(total - bins - bins * np.log(total / bins) - threshold)
 
