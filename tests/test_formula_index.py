@@ -7,7 +7,7 @@ from pathlib import Path
 
 import pytest
 
-from whitefringe import coherence, fringes, scans, spectra
+from whitefringe import coherence, fringes, media, scans, sky, spectra
 from whitefringe.references import CITATIONS
 
 ROOT = Path(__file__).resolve().parents[1]
@@ -30,7 +30,7 @@ def test_a_row_leads_to_function_source_and_test(quantity, function, source, tes
 
 def test_every_public_function_has_a_row():
     listed = {row[1].strip("`") for row in ROWS} | WITHOUT_FORMULA
-    areas = {"coherence": coherence, "fringes": fringes, "scans": scans, "spectra": spectra}
+    areas = {"coherence": coherence, "fringes": fringes, "media": media, "scans": scans, "sky": sky, "spectra": spectra}
     public = {f"{name}.{item}" for name, area in areas.items() for item in area.__all__ if inspect.isfunction(getattr(area, item))}
     assert public - listed == set()
 

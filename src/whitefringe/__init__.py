@@ -12,7 +12,7 @@ from types import ModuleType
 
 __version__ = "0.1.0"
 
-AREAS = ("coherence", "demo", "fringes", "io", "results", "scans", "setup", "spectra", "units", "widgets")
+AREAS = ("coherence", "demo", "fringes", "io", "media", "results", "scans", "setup", "sky", "spectra", "units", "widgets")
 
 __all__ = ["AREAS", "__version__"]
 

@@ -20,6 +20,9 @@ SPEED_OF_LIGHT = 299_792_458.0
 STEP = u.def_unit("step", doc="One step of a stage whose length is not known.")
 """Unit of a stage position that has no known length."""
 
+PPM = u.def_unit("ppm", 1e-6 * u.dimensionless_unscaled, doc="Parts per million.")
+"""Parts per million, for a mole fraction."""
+
 FloatArray = NDArray[np.float64]
 
 
@@ -148,6 +151,26 @@ def positive_si(value: Any, unit: u.UnitBase, name: str, example: str | None = N
     if result <= 0:
         raise InputError(f"{name} must be above zero; got {value}")
     return float(result)
+
+
+def as_temperature_si(value: Any, name: str = "temperature") -> Any:
+    """Convert a temperature (not a difference of two) in kelvin or degrees Celsius to kelvin.
+
+    Examples
+    --------
+    >>> import astropy.units as u
+    >>> as_temperature_si(20 * u.deg_C)
+    293.15
+    """
+    accepted = "a temperature, for example 288.15 K or 15 deg_C"
+    quantity = as_quantity(value, name, accepted)
+    try:
+        result = quantity.to_value(u.K, equivalencies=u.temperature())
+    except u.UnitConversionError:
+        raise UnitsError(f"{name} must be {accepted}; got {quantity.unit}") from None
+    if np.any(np.asarray(result) < 0):
+        raise InputError(f"{name} is below absolute zero: {quantity}")
+    return float(result) if np.ndim(result) == 0 else np.asarray(result, dtype=float)
 
 
 def read_only(values: Any, dtype: type = float) -> NDArray[Any]:

@@ -1,6 +1,6 @@
 """What light is let through: sources, filters, lines and the spectrum that the detector counts."""
 
-from ._parameters import Parameter, parameters_of
+from ..parameters import Parameter, parameters_of
 from ._shape import Filter
 from .beam import BEAM_EFFECTS, bare_of, in_beam, with_bare
 from .channels import CHANNEL_PROFILES, Channel, ChannelProfile, ChannelSet, split

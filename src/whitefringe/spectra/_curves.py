@@ -14,8 +14,8 @@ import numpy as np
 
 from ..errors import CurveEndsWarning, FileContentError, InputError, UnitsError
 from ..io import read_table
+from ..standard_air import vacuum_from_air
 from ..units import FloatArray, read_only
-from ._air import vacuum_from_air
 
 REPAIRS = ("sort", "merge-duplicates", "drop-non-finite", "clip-negative")
 """Names of the repairs: put rows in order; average rows of equal wavelength; leave out rows that are not finite; set values below

@@ -11,8 +11,8 @@ import numpy as np
 from scipy.special import ndtr, ndtri
 
 from ..errors import InputError
+from ..parameters import parameter
 from ..units import SPEED_OF_LIGHT, FloatArray, as_si, is_length, one_frequency_si
-from ._parameters import parameter
 from ._shape import SHORTEST, FilterShape
 from .lines import width_si
 

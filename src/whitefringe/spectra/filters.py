@@ -13,9 +13,9 @@ from typing import Any, ClassVar
 import astropy.units as u
 import numpy as np
 
+from ..parameters import parameter
 from ..units import SPEED_OF_LIGHT, FloatArray
 from ._curves import REPAIRS, Curve, prepare_curve, read_curve
-from ._parameters import parameter
 from ._shape import Filter, FilterShape, Peak, band_edges_si
 from .edges import LongPass, ShortPass
 from .lines import FOUR_LN2

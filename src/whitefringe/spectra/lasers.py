@@ -13,8 +13,8 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import InputError
+from ..parameters import parameter
 from ..units import SPEED_OF_LIGHT, FloatArray, one_frequency_si, positive_si
-from ._parameters import parameter
 from ._shape import number, whole
 from ._source import LineSource
 from .lines import FOUR_LN2, Line, width_si

@@ -15,8 +15,8 @@ import numpy as np
 from scipy.special import betainc, betaincinv
 
 from ..errors import InputError
+from ..parameters import parameter
 from ..units import FloatArray, as_quantity, is_length, positive_si
-from ._parameters import parameter
 from ._shape import Peak, number, whole
 from .lines import WIDTHS
 

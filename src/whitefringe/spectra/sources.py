@@ -16,8 +16,8 @@ import numpy as np
 from astropy.constants import h, k_B
 
 from ..errors import InputError
+from ..parameters import parameter
 from ..units import SPEED_OF_LIGHT, FloatArray, as_quantity, is_length, one_frequency_si, positive_si
-from ._parameters import parameter
 from ._source import NOWHERE, LineSource, Source, SourceShape
 from .filters import Gaussian
 from .lamps import Lamp

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import numpy as np
 
-from ..errors import InputError
-from ..units import FloatArray
+from .errors import InputError
+from .units import FloatArray
 
 RANGE = (0.3e-6, 1.69e-6)
 """Vacuum wavelengths [m] for which the dispersion formula is stated."""

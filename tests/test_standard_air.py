@@ -7,9 +7,9 @@ from astropy.table import Table
 
 from whitefringe.errors import InputError
 from whitefringe.spectra import read_filter
-from whitefringe.spectra._air import standard_air_refractivity, vacuum_from_air
+from whitefringe.standard_air import standard_air_refractivity, vacuum_from_air
 
-from ..published import rows
+from .published import rows
 
 
 @pytest.mark.parametrize("row", rows("air", "standard air refractivity"))

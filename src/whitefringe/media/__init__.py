@@ -1,0 +1,3 @@
+"""What the two arms do to the light's phase: air, glass, and the arms that are made of them."""
+
+__all__: list[str] = []
