@@ -10,8 +10,8 @@ from .units import FloatArray
 RANGE = (0.3e-6, 1.69e-6)
 """Vacuum wavelengths [m] for which the dispersion formula is stated."""
 
-_K = (238.0185, 5792105e-8, 57.362, 167917e-8)
-"""k0 to k3 of Ciddor 1996, eq. 1 [um^-2], the numerators over 1e8."""
+DISPERSION = (5792105e-8, 167917e-8), (238.0185, 57.362)
+"""k1, k3 (over 1e8) and k0, k2 of Ciddor 1996, eq. 1 [um^-2]: strengths and squares of the two poles."""
 
 
 def standard_air_refractivity(wavelength: FloatArray) -> FloatArray:
@@ -20,7 +20,7 @@ def standard_air_refractivity(wavelength: FloatArray) -> FloatArray:
     n - 1 = k1 / (k0 - sigma^2) + k3 / (k2 - sigma^2), sigma = 1 / wavelength in 1/um (Ciddor 1996, eq. 1; "ciddor").
     """
     squared = (1e-6 / wavelength) ** 2
-    k0, k1, k2, k3 = _K
+    (k1, k3), (k0, k2) = DISPERSION
     return np.asarray(k1 / (k0 - squared) + k3 / (k2 - squared))
 
 

@@ -112,12 +112,12 @@ def _continuum(spectrum: Spectrum, tau: FloatArray) -> ComplexArray:
     centre = spectrum.start_si + 0.5 * density.size * step
     turn = np.exp(-2j * np.pi * phase)
     to_middle = np.exp(1j * np.pi * (density.size - 1) * phase)
-    even = _sum(density, phase) * to_middle
+    even = sum_of_turns(density, phase) * to_middle
     # the central differences of all inner cells follow from the same sum; only the ends need their own terms
     if spectrum.slopes_are_central:
         odd = 0.5 * (np.conj(turn) - turn) * even + _end_terms(density, slopes, turn, to_middle)
     else:
-        odd = _sum(slopes, phase) * to_middle
+        odd = sum_of_turns(slopes, phase) * to_middle
     x = np.pi * phase
     cell = even * spherical_jn(0, np.abs(x)) - 0.5j * odd * np.sign(x) * spherical_jn(1, np.abs(x))
     return np.asarray(step * np.exp(-2j * np.pi * centre * tau) * cell)
@@ -141,7 +141,7 @@ def _warn_if_unresolved(phase: FloatArray) -> None:
         )
 
 
-def _sum(values: FloatArray, phase: FloatArray) -> ComplexArray:
+def sum_of_turns(values: FloatArray | ComplexArray, phase: FloatArray) -> ComplexArray:
     """Sum over k of values[k] exp(-2 pi i k phase), by the cheaper of two ways."""
     if phase.size > _FEW and _is_uniform(phase, values.size):
         return _chirp_sum(values, float(phase[0]), float(phase[-1]), phase.size)
@@ -154,12 +154,12 @@ def _is_uniform(phase: FloatArray, cells: int) -> bool:
     return bool(np.max(np.abs(phase - ideal)) * cells < 1e-11) and phase[0] != phase[-1]
 
 
-def _chirp_sum(values: FloatArray, first: float, last: float, count: int) -> ComplexArray:
+def _chirp_sum(values: FloatArray | ComplexArray, first: float, last: float, count: int) -> ComplexArray:
     """Chirp-z transform (scipy) at `count` equally spaced phases."""
     return np.asarray(zoom_fft(values, [first, last], m=count, fs=1.0, endpoint=True))
 
 
-def _block_sum(values: FloatArray, phase: FloatArray) -> ComplexArray:
+def _block_sum(values: FloatArray | ComplexArray, phase: FloatArray) -> ComplexArray:
     """Direct sum, with k = a * width + b so that only 2 sqrt(n) exponentials per delay are needed."""
     width = int(np.ceil(np.sqrt(values.size)))
     rows = -(-values.size // width)

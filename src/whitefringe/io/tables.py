@@ -10,6 +10,7 @@ import csv
 import hashlib
 import re
 import warnings
+from collections.abc import Collection
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -28,7 +29,7 @@ FITS_ENDINGS = (".fits", ".fit", ".fts", ".fits.gz")
 _NAME_WITH_UNIT = re.compile(r"^\s*(?P<name>[^\[\(]*?)\s*[\[\(](?P<unit>[^\]\)]*)[\]\)]\s*$")
 
 
-def read_table(path: str | Path) -> Table:
+def read_table(path: str | Path, *, text: Collection[str] = ()) -> Table:
     """Read a table of numbers with the units that its header states.
 
     Parameters
@@ -36,6 +37,8 @@ def read_table(path: str | Path) -> Table:
     path : path
         ``.fits`` (first binary table), VOTable (first table), ECSV (known by its first line), CSV with a header line, or columns of
         numbers without a header, separated by blanks or commas (columns are then named ``col0``, ``col1``, ...).
+    text : names
+        Columns that hold words; all others must hold numbers.
 
     Returns
     -------
@@ -55,7 +58,7 @@ def read_table(path: str | Path) -> Table:
     if path.stat().st_size == 0:
         raise FileContentError(f"{path}: the file is empty")
     kind, reader = _reader_for(path)
-    table = reader(path)
+    table = _all_numbers(reader(path), path, text)
     if len(table) == 0:
         raise FileContentError(f"{path}: the table has no rows")
     table.meta["unit_notes"] = tuple(table.meta["unit_notes"] if kind == "CSV" else _settle_units(table, path))
@@ -111,7 +114,7 @@ def _read_fits(path: Path) -> Table:
         raise FileContentError(f"{path}: not a readable FITS table, or cut short ({_line(error)})") from None
     for name in table.colnames:
         _nan_where_masked(table, name)
-    return _all_numbers(table, path)
+    return table
 
 
 def _nan_where_masked(table: Table, name: str) -> None:
@@ -142,7 +145,7 @@ def _read_votable(path: Path) -> Table:
     table = read_votable(path)
     for name in table.colnames:
         _nan_where_masked(table, name)
-    return _all_numbers(table, path)
+    return table
 
 
 def _read_ecsv(path: Path) -> Table:
@@ -152,9 +155,7 @@ def _read_ecsv(path: Path) -> Table:
     try:
         with warnings.catch_warnings():
             warnings.simplefilter("ignore", u.UnitsWarning)
-            return _all_numbers(Table.read(lines, format="ascii.ecsv"), path)
-    except FileContentError:
-        raise
+            return Table.read(lines, format="ascii.ecsv")
     except Exception as error:  # the ECSV reader has no error class of its own
         raise FileContentError(f"{path}: not valid ECSV{_row_of_fault(lines)} ({_line(error)})") from None
 
@@ -196,7 +197,7 @@ def _read_csv(path: Path) -> Table:
                 raise FileContentError(f"{path}: column {name!r} stands in the header more than once")
             table.rename_column(column, name)
     table.meta["unit_notes"] = notes
-    return _all_numbers(table, path)
+    return table
 
 
 def _read_bare(path: Path) -> Table:
@@ -224,10 +225,10 @@ def _bare_row_of_fault(path: Path, separator: str | None) -> str:
     return ""
 
 
-def _all_numbers(table: Table, path: Path) -> Table:
+def _all_numbers(table: Table, path: Path, text: Collection[str]) -> Table:
     for name in table.colnames:
         column = table[name]
-        if column.dtype.kind in "OSU":
+        if name not in text and column.dtype.kind in "OSU":
             bad = next((row for row, entry in enumerate(column) if not _is_numeric(str(entry))), None)
             if bad is None:
                 raise FileContentError(f"{path}: column {name!r} does not hold one number per row, but text")

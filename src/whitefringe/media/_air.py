@@ -1,0 +1,202 @@
+"""What the air models share: conditions with their ranges, water vapour, and derivatives of the index with the conditions."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from functools import cached_property
+from typing import Any, ClassVar, NamedTuple, Self
+
+import astropy.units as u
+import numpy as np
+
+from ..errors import InputError, UnitsError
+from ..parameters import parameter
+from ..units import PPM, SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, as_temperature_si, positive_si
+from ._derivatives import times_wavenumber
+from .medium import Medium, Range, dimensionless_si
+from .moist_air import SATURATION_FORMS
+
+CONDITIONS = ("temperature", "pressure", "humidity")
+"""Names of what acts on air."""
+
+STEPS = {"temperature": 0.02, "pressure": 20.0, "humidity": 1e-3}
+"""Steps [K, Pa, 1] of the central differences: the models are so smooth that what they leave is below 1e-8 of the derivative."""
+
+DERIVATIVE_UNITS = {"temperature": u.K, "pressure": u.Pa, "humidity": u.dimensionless_unscaled}
+
+
+class State(NamedTuple):
+    """Conditions as the formulas take them: temperature [K], pressure [Pa] and the vapour's partial pressure [Pa]."""
+
+    temperature: float
+    pressure: float
+    vapour: float
+
+
+@dataclass(frozen=True, kw_only=True)
+class Air(Medium):
+    """Air under stated conditions; the base of the models.
+
+    Parameters
+    ----------
+    temperature : Quantity [K or deg_C]
+    pressure : Quantity [Pa]
+    humidity : Quantity [percent, or pressure]
+        Relative humidity (over ice below 0 degrees C), or the partial pressure of the water vapour.
+    extrapolate : bool
+        Go beyond the model's ranges, and have the results flagged.
+    saturation : str
+        Form of the saturation vapour pressure, see `saturation_vapour_pressure`.
+    """
+
+    temperature: u.Quantity = parameter("air temperature", u.deg_C, low=-10.0, high=40.0, step=0.1, start=15.0, default=15.0 * u.deg_C)
+    pressure: u.Quantity = parameter("air pressure", u.hPa, low=600.0, high=1080.0, step=1.0, start=1013.0, default=101325.0 * u.Pa)
+    humidity: u.Quantity = parameter("relative humidity", u.percent, low=0.0, high=100.0, step=1.0, start=0.0, default=0.0 * u.percent)
+    extrapolate: bool = False
+    saturation: str = "iapws"
+
+    shape: ClassVar[str]
+    stated: ClassVar[tuple[Range, Range, Range]]
+    """Ranges of temperature [deg_C], pressure [kPa] and relative humidity [%]."""
+
+    def __post_init__(self) -> None:
+        if self.saturation not in SATURATION_FORMS:
+            raise InputError(f"saturation must be one of {', '.join(SATURATION_FORMS)}; got {self.saturation!r}")
+        positive_si(self.pressure, u.Pa, "pressure", "hPa")
+        if not -1e-12 <= self.relative_humidity <= 1 + 1e-12:
+            raise InputError(
+                f"humidity must be from 0 to 100 %, or up to {self._saturated_si:.5g} Pa of vapour at this temperature; "
+                f"got {self.humidity} ({self.relative_humidity:.4g} of saturation)"
+            )
+        words = [text for text in self._outside() if text]
+        if words and not self.extrapolate:
+            raise InputError(f"{self.name}: {'; '.join(words)}; use another model, or say extrapolate=True to have the results flagged")
+
+    def _outside(self) -> list[str]:
+        temperature, pressure, humidity = self.stated
+        return [
+            temperature.outside(self.temperature_si - 273.15),
+            pressure.outside(self.pressure_si / 1e3),
+            humidity.outside(100 * self.relative_humidity),
+        ]
+
+    def _condition_flags(self) -> tuple[str, ...]:
+        return tuple(f"{self.name} extrapolated: {text}" for text in self._outside() if text)
+
+    @property
+    def is_air(self) -> bool:
+        """Air it is."""
+        return True
+
+    def under(self, *, temperature: Any = None, pressure: Any = None, humidity: Any = None) -> Self:
+        """Return the same model under other conditions."""
+        given = {"temperature": temperature, "pressure": pressure, "humidity": humidity}
+        return replace(self, **{key: value for key, value in given.items() if value is not None})
+
+    def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
+        """N - 1 and the derivatives of n with wavenumber [1/m], shape (4, ...)."""
+        return self.refractivity_at_si(wavenumber, self.state_si)
+
+    def refractivity_at_si(self, wavenumber: FloatArray, state: State) -> FloatArray:
+        """Like `refractivity_si`, in another state of the air, ranges unasked."""
+        raise NotImplementedError
+
+    def refractivity_shifted_si(self, wavenumber: FloatArray, **shift: float) -> FloatArray:
+        """Like `refractivity_si`, in air that is warmer, denser or moister; see `shifted_si`."""
+        return self.refractivity_at_si(wavenumber, self.shifted_si(**shift))
+
+    @cached_property
+    def state_si(self) -> State:
+        """Temperature [K], pressure [Pa], vapour pressure [Pa]."""
+        return State(self.temperature_si, self.pressure_si, self.vapour_pressure_si)
+
+    def shifted_si(self, temperature: float = 0.0, pressure: float = 0.0, humidity: float = 0.0) -> State:
+        """Return the state of air warmer [K], denser [Pa] or moister [fraction of saturation]; warmer air keeps its relative humidity."""
+        warm = self.temperature_si + temperature
+        return State(warm, self.pressure_si + pressure, (self.relative_humidity + humidity) * self.saturated_si(warm))
+
+    @cached_property
+    def temperature_si(self) -> float:
+        """Temperature [K]."""
+        return float(as_temperature_si(self.temperature))
+
+    @cached_property
+    def pressure_si(self) -> float:
+        """Pressure [Pa]."""
+        return float(as_si(self.pressure, u.Pa, "pressure", "hPa"))
+
+    def saturated_si(self, temperature: float) -> float:
+        """Saturation vapour pressure [Pa] at a temperature [K]."""
+        return SATURATION_FORMS[self.saturation](temperature)
+
+    @cached_property
+    def _saturated_si(self) -> float:
+        return self.saturated_si(self.temperature_si)
+
+    @cached_property
+    def vapour_pressure_si(self) -> float:
+        """Partial pressure of the water vapour [Pa], by the pure saturation pressure (no enhancement factor)."""
+        if as_quantity(self.humidity, "humidity", HUMIDITY).unit.is_equivalent(u.Pa):
+            return float(as_si(self.humidity, u.Pa, "humidity"))
+        try:
+            return dimensionless_si(self.humidity, "humidity", HUMIDITY) * self._saturated_si
+        except UnitsError:
+            raise
+        except InputError:
+            raise UnitsError(f"humidity must be {HUMIDITY}; got {self.humidity}") from None
+
+    @property
+    def relative_humidity(self) -> float:
+        """Vapour pressure over saturation pressure."""
+        return self.vapour_pressure_si / self._saturated_si
+
+    def index_derivative(self, wavelength: Any, by: str) -> u.Quantity:
+        """Return the derivative of the phase index with a condition, the others fixed (the relative humidity too).
+
+        Parameters
+        ----------
+        wavelength : Quantity [vacuum wavelength or frequency], any shape
+        by : str
+            ``"temperature"``, ``"pressure"`` or ``"humidity"``.
+
+        Returns
+        -------
+        Quantity [1/K, 1/Pa, or per unit of relative humidity; 0.01 of it is per percent]
+
+        Notes
+        -----
+        A central difference of the model, see `STEPS`.
+        """
+        return self._derivative(wavelength, by, lambda sigma, shift: self.refractivity_shifted_si(sigma, **shift)[0])
+
+    def group_index_derivative(self, wavelength: Any, by: str) -> u.Quantity:
+        """Return the derivative of the group index with a condition; arguments as for `index_derivative`."""
+
+        def group(sigma: FloatArray, shift: dict[str, float]) -> FloatArray:
+            return np.asarray(times_wavenumber(self.refractivity_shifted_si(sigma, **shift), sigma)[1])
+
+        return self._derivative(wavelength, by, group)
+
+    def _derivative(self, wavelength: Any, by: str, function: Callable[[FloatArray, dict[str, float]], FloatArray]) -> u.Quantity:
+        if by not in STEPS:
+            raise InputError(f"by must be one of {', '.join(STEPS)}; got {by!r}")
+        sigma = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float) / SPEED_OF_LIGHT
+        self.flags_si(sigma)
+        step = STEPS[by]
+        change = (function(sigma, {by: step}) - function(sigma, {by: -step})) / (2 * step)
+        return u.Quantity(change, 1 / DERIVATIVE_UNITS[by])
+
+
+HUMIDITY = "a relative humidity or a vapour pressure, for example 40 * u.percent or 900 * u.Pa"
+
+
+def co2_fraction(value: Any) -> float:
+    """Return a mole fraction of carbon dioxide, given bare (450e-6) or in `units.PPM`."""
+    quantity = u.Quantity(value)
+    if not quantity.unit.is_equivalent(PPM) or quantity.ndim:
+        raise UnitsError(f"co2 must be one mole fraction, for example 450e-6 or 450 * units.PPM; got {value!r}")
+    fraction = float(quantity.to_value(u.dimensionless_unscaled))
+    if not 0 <= fraction <= 0.1:
+        raise InputError(f"co2 must be a mole fraction from 0 to 0.1, for example 450e-6 for 450 ppm; got {value!r}")
+    return fraction

@@ -1,0 +1,167 @@
+"""What every medium offers: index, group index and dispersion, within the range for which its formula is stated."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import Any, ClassVar, Self
+
+import astropy.units as u
+import numpy as np
+
+from ..errors import InputError
+from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity
+from ._derivatives import times_wavenumber
+
+ADVICE = "use a medium that is stated there (media.TwoModelAir joins two air models), or say extrapolate=True to have the result flagged"
+
+
+@dataclass(frozen=True, kw_only=True)
+class Range:
+    """Where a formula holds: `name` of the quantity, `low` to `high` in `unit`, and who says so."""
+
+    name: str
+    low: float
+    high: float
+    unit: str
+    source: str
+
+    def outside(self, values: Any) -> str:
+        """Say which of the values lie outside, or return nothing."""
+        low, high = float(np.min(values)), float(np.max(values))
+        slack = 1e-9 * (self.high - self.low)  # a value typed in another unit may miss an end by rounding
+        if low >= self.low - slack and high <= self.high + slack:
+            return ""
+        shown = f"{low:.6g}" if low == high else f"{low:.6g} to {high:.6g}"
+        return f"{self.name} {shown} {self.unit} lies outside {self.low:g} to {self.high:g} {self.unit} ({self.source})"
+
+
+class Medium:
+    """A medium that light goes through.
+
+    A subclass has `name`, `extrapolate`, `wavelengths` (the `Range` in um of vacuum wavelength, or None) and `refractivity_si`; the rest
+    follows.
+    """
+
+    name: str
+    extrapolate: bool = False
+    wavelengths: ClassVar[Range | None] = None
+
+    def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
+        """N - 1 and the first three derivatives of n with vacuum wavenumber [1/m], shape (4, ...)."""
+        raise NotImplementedError
+
+    def refractivity_shifted_si(self, wavenumber: FloatArray, **shift: float) -> FloatArray:
+        """Like `refractivity_si`, in air that is warmer [K], denser [Pa] or moister [fraction]; other media do not change."""
+        return self.refractivity_si(wavenumber)
+
+    def under(self, *, temperature: Any = None, pressure: Any = None, humidity: Any = None) -> Self:
+        """Return the same medium under other conditions.
+
+        Raises
+        ------
+        InputError
+            The medium does not depend on what is given.
+        """
+        given = {"temperature": temperature, "pressure": pressure, "humidity": humidity}
+        for key, value in given.items():
+            if value is not None:
+                raise InputError(f"{self.name} has no {key} to set here; leave it out")
+        return self
+
+    @property
+    def is_air(self) -> bool:
+        """Whether temperature, pressure and humidity of the air act on it."""
+        return False
+
+    def flags(self, wavelength: Any = None) -> tuple[str, ...]:
+        """Return what was extrapolated, in words, for vacuum wavelengths (or frequencies); empty where everything is in range."""
+        if wavelength is None:
+            return self._condition_flags()
+        frequency = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float)
+        return self.flags_si(frequency / SPEED_OF_LIGHT)
+
+    def flags_si(self, wavenumber: FloatArray) -> tuple[str, ...]:
+        """Twin of `flags` for wavenumbers [1/m].
+
+        Raises
+        ------
+        InputError
+            Out of range without ``extrapolate=True``.
+        """
+        words = self.wavelengths.outside(1e6 / wavenumber) if self.wavelengths is not None else ""
+        if words and not self.extrapolate:
+            raise InputError(f"{self.name}: {words}; {ADVICE}")
+        return (*self._condition_flags(), *([f"{self.name} extrapolated: {words}"] if words else []))
+
+    def _condition_flags(self) -> tuple[str, ...]:
+        return ()
+
+    def refractive_index(self, wavelength: Any) -> u.Quantity:
+        """Return the phase index n.
+
+        Parameters
+        ----------
+        wavelength : Quantity [vacuum wavelength or frequency], any shape
+
+        Returns
+        -------
+        Quantity, same shape, dimensionless
+            ``info.description`` says so where it was extrapolated.
+
+        Raises
+        ------
+        InputError
+            Outside the formula's range, unless the medium was made with ``extrapolate=True``.
+        """
+        return self._flagged(wavelength, lambda sigma: 1.0 + self.refractivity_si(sigma)[0], u.dimensionless_unscaled)
+
+    def group_index(self, wavelength: Any) -> u.Quantity:
+        """Return the group index n_g = n + sigma dn/dsigma = n - lambda dn/dlambda; arguments as for `refractive_index`."""
+        return self._flagged(wavelength, lambda sigma: 1.0 + self._path_si(sigma)[1], u.dimensionless_unscaled)
+
+    def group_velocity_dispersion(self, wavelength: Any) -> u.Quantity:
+        """Return d^2k/domega^2 = (1 / 2 pi c^2) d^2(n sigma)/dsigma^2 [fs^2/mm]; arguments as for `refractive_index`.
+
+        References
+        ----------
+        Saleh & Teich, Fundamentals of Photonics, 2nd ed., sec. 5.6 (from memory).
+        """
+        scale = 1 / (2 * np.pi * SPEED_OF_LIGHT**2)
+        return self._flagged(wavelength, lambda sigma: scale * self._path_si(sigma)[2] * 1e27, u.fs**2 / u.mm)
+
+    def third_order_dispersion(self, wavelength: Any) -> u.Quantity:
+        """Return d^3k/domega^3 = (1 / 4 pi^2 c^3) d^3(n sigma)/dsigma^3 [fs^3/mm]; arguments as for `refractive_index`."""
+        scale = 1 / (4 * np.pi**2 * SPEED_OF_LIGHT**3)
+        return self._flagged(wavelength, lambda sigma: scale * self._path_si(sigma)[3] * 1e42, u.fs**3 / u.mm)
+
+    def _path_si(self, sigma: FloatArray) -> FloatArray:
+        """(n - 1) sigma and its derivatives: wavenumber that the medium adds to the vacuum's."""
+        return times_wavenumber(self.refractivity_si(sigma), sigma)
+
+    def _flagged(self, wavelength: Any, function: Any, unit: u.UnitBase) -> u.Quantity:
+        sigma = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float) / SPEED_OF_LIGHT
+        flags = self.flags_si(sigma)
+        result = u.Quantity(function(sigma), unit)
+        if flags:
+            result.info.description = "; ".join(flags)
+        return result
+
+
+@dataclass(frozen=True, kw_only=True)
+class Vacuum(Medium):
+    """Vacuum: index one at every wavelength."""
+
+    name: str = field(default="vacuum", init=False)
+    shape: ClassVar[str] = "vacuum"
+
+    def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
+        """Zero."""
+        return np.zeros((4, *np.shape(wavenumber)))
+
+
+def dimensionless_si(value: Any, name: str, example: str) -> float:
+    """Return a Quantity without dimension (such as percent) as one fraction; a bare number is refused."""
+    quantity = as_quantity(value, name, example)
+    if not quantity.unit.is_equivalent(u.dimensionless_unscaled) or quantity.ndim:
+        raise InputError(f"{name} must be one number ({example}); got {value}")
+    return float(quantity.to_value(u.dimensionless_unscaled))

@@ -1,0 +1,237 @@
+"""The fringe packet of two arms that differ: dispersed, compared with the one that equal arms would show."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+from typing import Any
+
+import astropy.units as u
+import numpy as np
+from scipy.optimize import brentq
+
+from ..coherence.degree import ComplexArray
+from ..coherence.widths import packet_width
+from ..errors import InputError, UndefinedWidthError
+from ..results import Measured
+from ..spectra import Spectrum
+from ..units import SPEED_OF_LIGHT, FloatArray, as_si
+from ._transform import PhasedTransform
+from .arms import ArmPair, band_si
+
+PER_WIDTH = 16
+"""Path differences per undispersed packet width in the search for the greatest contrast."""
+
+FINER = 33
+"""Path differences of each finer search; more than 24, so that they go through a chirp-z transform."""
+
+MOST = 60_000
+"""Path differences of a search at most."""
+
+
+@dataclass(frozen=True, kw_only=True, eq=False)
+class DispersedPacket:
+    """The packet of one light behind two arms.
+
+    gamma(x) = int S(nu) exp(-2 pi i [nu x / c + nu OPD(nu) / c]) dnu / int S dnu, x the path difference that is added to the second arm in
+    vacuum (by the delay line or stage), OPD(nu) that of the arms.
+
+    Parameters
+    ----------
+    pair : ArmPair
+    light : Spectrum
+
+    Notes
+    -----
+    Where the second arm is the longer one, the packet lies at negative x. Dispersion within a line of the light is left out; its group
+    delay is not.
+
+    Examples
+    --------
+    >>> import astropy.units as u
+    >>> from whitefringe import media, spectra
+    >>> light = spectra.detected(spectra.Flat(), spectra.TopHat(centre=1.65 * u.um, width=0.3 * u.um))
+    >>> pair = media.ArmPair(first=[media.Segment(medium=media.Glass.named("N-BK7"), length=10 * u.mm)], second=[])
+    >>> packet = media.DispersedPacket(pair=pair, light=light)
+    >>> print(f"{packet.peak_contrast.value:.4f} at {packet.position.value:.4f}, {packet.broadening.value:.3f} times as wide")
+    0.8345 at 15211.1138 um, 1.244 times as wide
+    """
+
+    pair: ArmPair
+    light: Spectrum
+
+    def __post_init__(self) -> None:
+        _ = self.flags
+
+    @cached_property
+    def flags(self) -> tuple[str, ...]:
+        """What is extrapolated, in words."""
+        return self.pair.flags(self.light)
+
+    @cached_property
+    def _transform(self) -> PhasedTransform:
+        return PhasedTransform(self.light, self.pair.refraction_si)
+
+    def degree(self, opd: Any) -> ComplexArray:
+        """Return the complex degree of coherence at added path differences.
+
+        Parameters
+        ----------
+        opd : Quantity [length], any shape
+            Added to the second arm in vacuum.
+        """
+        return self.degree_si(np.asarray(as_si(opd, u.m, "opd", "um")))
+
+    def degree_si(self, opd: FloatArray) -> ComplexArray:
+        """Twin of `degree`: path differences in metres."""
+        return self._transform(np.asarray(opd, dtype=float) + self.pair.geometric_si)
+
+    @cached_property
+    def _zero_si(self) -> float:
+        """Added path difference [m] at which the group delay of the mean frequency is balanced."""
+        return -(self.pair.geometric_si + self._transform.group_opd)
+
+    @cached_property
+    def centre_si(self) -> float:
+        """Centre of |gamma|^2 [m]: minus the group path difference, weighted by S^2."""
+        return centre_si(self.pair, self.light)
+
+    @cached_property
+    def undispersed_width_si(self) -> float:
+        """Full width at half contrast [m] that equal arms would show."""
+        return float(packet_width(self.light).value.to_value(u.m))
+
+    @cached_property
+    def _spread_si(self) -> float:
+        """How far [m] the group delay wanders over the band."""
+        edges = np.linspace(*band_si(self.light), 33) / SPEED_OF_LIGHT
+        group = self.pair.refraction_si(edges)[1]
+        return float(np.ptp(group))
+
+    @cached_property
+    def _sampled(self) -> tuple[FloatArray, FloatArray]:
+        """Path differences from `_zero_si` about the packet, and |gamma| there."""
+        half = 2 * self.undispersed_width_si + 1.5 * self._spread_si
+        count = int(np.ceil(2 * half / self.undispersed_width_si * PER_WIDTH)) | 1
+        if count > MOST:
+            raise UndefinedWidthError(
+                f"the arms spread this light over {self._spread_si:.3g} m, more than {MOST // PER_WIDTH} packet widths: there is no packet "
+                "to speak of; balance the arms or narrow the band"
+            )
+        x = np.linspace(-half, half, count)
+        return x, np.abs(self._transform.about(x))
+
+    @cached_property
+    def _peak(self) -> tuple[float, float]:
+        """Place [m] from `_zero_si` and height of the greatest contrast.
+
+        The best of the samples, of finer ones about it, and a parabola through three of those.
+        """
+        x, contrast = self._sampled
+        step = float(x[1] - x[0])
+        for _ in range(2):
+            best = float(x[int(np.argmax(contrast))])
+            x = best + np.linspace(-step, step, FINER)
+            contrast = np.abs(self._transform.about(x))
+            step = 2 * step / (FINER - 1)
+        middle = int(np.clip(np.argmax(contrast), 1, FINER - 2))
+        left, top, right = contrast[middle - 1 : middle + 2]
+        bend = left - 2 * top + right
+        shift = 0.5 * (left - right) / bend if bend < 0 else 0.0
+        return float(x[middle] + shift * step), float(top - 0.25 * (left - right) * shift)
+
+    @property
+    def peak_si(self) -> float:
+        """Added path difference [m] of the greatest contrast."""
+        return self._zero_si + self._peak[0]
+
+    @property
+    def peak_contrast(self) -> Measured:
+        """Greatest contrast; 1 for equal arms."""
+        return Measured(value=self._peak[1] * u.one, definition="greatest |gamma| of the dispersed packet", citation="goodman")
+
+    @property
+    def position(self) -> Measured:
+        """Added path difference of the greatest contrast."""
+        return Measured(value=(self.peak_si * u.m).to(u.um), definition="path difference, added in vacuum, of the greatest contrast")
+
+    @property
+    def centre(self) -> Measured:
+        """Added path difference of the centre of |gamma|^2."""
+        return Measured(value=(self.centre_si * u.m).to(u.um), definition="path difference, added in vacuum, of the centre of |gamma|^2")
+
+    @cached_property
+    def _flanks(self) -> tuple[float, float]:
+        """Path differences [m] left and right from the greatest contrast at which |gamma| first falls to half of it."""
+        x, contrast = self._sampled
+        place, height = self._peak
+        found = []
+        for side in (-1, 1):
+            outward = x[x * side > place * side][::side]
+            below = np.flatnonzero(contrast[x * side > place * side][::side] < height / 2)
+            if not below.size:
+                raise UndefinedWidthError("the dispersed packet does not fall to half its greatest contrast within the searched range")
+            inner = outward[below[0] - 1] if below[0] else place
+            found.append(self._half_between(float(inner), float(outward[below[0]]), height / 2))
+        return place - found[0], found[1] - place
+
+    def _half_between(self, inner: float, outer: float, level: float) -> float:
+        def above(share: float) -> float:
+            return float(abs(self._transform.about(np.array([inner + share * (outer - inner)]))[0])) - level
+
+        return inner + float(brentq(above, 0.0, 1.0, xtol=1e-9)) * (outer - inner)
+
+    @property
+    def width(self) -> Measured:
+        """Full width at half the greatest contrast."""
+        return Measured(value=(sum(self._flanks) * u.m).to(u.um), definition="full width of the packet at half its greatest contrast")
+
+    @property
+    def broadening(self) -> Measured:
+        """Width over that of the undispersed packet."""
+        return Measured(
+            value=sum(self._flanks) / self.undispersed_width_si * u.one, definition="full width at half, over that of equal arms"
+        )
+
+    @property
+    def asymmetry(self) -> Measured:
+        """(right - left) / (right + left) of the half widths about the greatest contrast; 0 for a symmetric packet."""
+        left, right = self._flanks
+        return Measured(
+            value=(right - left) / (right + left) * u.one, definition="(right - left) / (right + left), half widths at half contrast"
+        )
+
+    @property
+    def rows(self) -> tuple[tuple[str, Measured | str], ...]:
+        """All numbers with their names, for a table; a number that does not exist is a reason in words."""
+        found: list[tuple[str, Measured | str]] = []
+        for name in ("peak_contrast", "position", "centre", "width", "broadening", "asymmetry"):
+            try:
+                found.append((name.replace("_", " "), getattr(self, name)))
+            except UndefinedWidthError as reason:
+                found.append((name.replace("_", " "), str(reason)))
+        return tuple(found)
+
+
+def centre_si(pair: ArmPair, light: Spectrum, **shift: Any) -> float:
+    """Added path difference [m] of the centre of |gamma|^2 in a light: minus the group path difference weighted by S^2.
+
+    int x |gamma|^2 dx / int |gamma|^2 dx = -int S^2 G dnu / int S^2 dnu, G the group path difference of the arms (moment theorem). Light
+    of lines only has no such centre: its lines count by their squared strengths. `shift` as for `ArmPair.refraction_shifted_si`.
+    """
+    sigma, weight = _weights(light)
+    group = pair.refraction_shifted_si(sigma, **shift)[1]
+    return -(pair.geometric_si + float(np.sum(weight * group) / np.sum(weight)))
+
+
+def _weights(light: Spectrum) -> tuple[FloatArray, FloatArray]:
+    """Wavenumbers [1/m] and the squared density there; of a light of lines only, the squared strengths."""
+    if light.density.size:
+        if light.lines:
+            raise InputError(
+                "the centre of a packet is not defined for light of continuum and lines together; ask for the greatest contrast"
+            )
+        return light.frequency_si / SPEED_OF_LIGHT, light.density**2 + light.slopes**2 / 12
+    places = [(line.frequency_si / SPEED_OF_LIGHT, line.strength**2) for line in light.lines]
+    sigma, weight = np.array(places).T
+    return sigma, weight

@@ -1,0 +1,123 @@
+"""How uncertain what follows from two arms is: lengths, and the air that all segments share or one has alone."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, replace
+from typing import Any
+
+import astropy.units as u
+import numpy as np
+
+from ..errors import InputError
+from ..units import as_quantity, as_si
+from ._air import STEPS
+from .arms import ArmPair, Segment
+
+LENGTH_STEP = 1e-2
+"""Step [m] of the differences with a length: what is asked for is nearly linear in the lengths, and an optimum is known to 1e-9 m only."""
+
+PARTS = {
+    "lengths": "lengths",
+    "temperature": "air temperature",
+    "pressure": "air pressure",
+    "humidity": "air humidity",
+    "segments": "segments' own",
+}
+
+
+@dataclass(frozen=True, kw_only=True)
+class AirUncertainty:
+    """One standard deviation of what all air in both arms has in common.
+
+    Parameters
+    ----------
+    temperature : Quantity [K]
+    pressure : Quantity [Pa]
+    humidity : Quantity [percent]
+        Of relative humidity.
+    """
+
+    temperature: u.Quantity = 0.0 * u.K
+    pressure: u.Quantity = 0.0 * u.Pa
+    humidity: u.Quantity = 0.0 * u.percent
+
+    def __post_init__(self) -> None:
+        if min(self.steps_si.values()) < 0:
+            raise InputError(f"an uncertainty must be zero or more; got {self}")
+
+    @property
+    def steps_si(self) -> dict[str, float]:
+        """Standard deviations [K, Pa, 1]."""
+        as_quantity(self.humidity, "humidity", "for example 3 * u.percent")
+        return {
+            "temperature": float(as_si(self.temperature, u.K, "temperature")),
+            "pressure": float(as_si(self.pressure, u.Pa, "pressure", "hPa")),
+            "humidity": float(as_si(self.humidity, u.dimensionless_unscaled, "humidity", "percent")),
+        }
+
+
+Function = Callable[[ArmPair, dict[str, Any]], float]
+"""What is asked for, of a pair, with a shift of its air (as `ArmPair.refraction_shifted_si` takes it)."""
+
+
+def by_air(function: Function, pair: ArmPair, key: str) -> float:
+    """Derivative of `function` with a condition of all air, by a central difference."""
+    step = STEPS[key]
+    return (function(pair, {key: step}) - function(pair, {key: -step})) / (2 * step)
+
+
+def by_length(function: Function, pair: ArmPair, number: int, step: float = LENGTH_STEP) -> float:
+    """Derivative of `function` with the length [m] of a segment, by its number in `ArmPair.signed`."""
+    return (function(lengthened(pair, number, step), {}) - function(lengthened(pair, number, -step), {})) / (2 * step)
+
+
+def lengthened(pair: ArmPair, number: int, by: float) -> ArmPair:
+    """Return the pair with one segment longer [m]; a difference may take it below zero, which no user's segment can be."""
+    arms = [list(pair.first), list(pair.second)]
+    which, place = (0, number) if number < len(pair.first) else (1, number - len(pair.first))
+    item = arms[which][place]
+    longer = item.length_si + by
+    if longer < 0:  # the same path with the other sign: in the other arm
+        arms[which][place] = replace(item, length=0 * u.m)
+        arms[1 - which].append(replace(item, length=-longer * u.m))
+    else:
+        arms[which][place] = replace(item, length=longer * u.m)
+    return ArmPair(first=arms[0], second=arms[1])
+
+
+def uncertainties(function: Function, pair: ArmPair, air: AirUncertainty) -> dict[str, float]:
+    """Contributions of everything uncertain to `function`, each one standard deviation (first order), by the names of `PARTS`."""
+    segments = [item for _, item in pair.signed]
+    found = {
+        "lengths": _root_sum(_lengths(function, pair, segments)),
+        "segments": _root_sum(_own_temperatures(function, pair, segments)),
+    }
+    for key, sigma in air.steps_si.items():
+        found[key] = abs(by_air(function, pair, key)) * sigma if sigma and pair.has_air else 0.0
+    return {PARTS[key]: found[key] for key in PARTS}
+
+
+def _lengths(function: Function, pair: ArmPair, segments: list[Segment]) -> Iterator[float]:
+    for number, item in enumerate(segments):
+        sigma = float(as_si(item.length_uncertainty, u.m, "length_uncertainty"))
+        if sigma:
+            yield by_length(function, pair, number) * sigma
+
+
+def _own_temperatures(function: Function, pair: ArmPair, segments: list[Segment]) -> Iterator[float]:
+    step = STEPS["temperature"]
+    for number, item in enumerate(segments):
+        sigma = float(as_si(item.temperature_uncertainty, u.K, "temperature_uncertainty"))
+        if sigma and item.medium.is_air:
+            up, down = ({"only": number, "temperature": sign * step} for sign in (1, -1))
+            yield (function(pair, up) - function(pair, down)) / (2 * step) * sigma
+
+
+def _root_sum(parts: Iterator[float]) -> float:
+    return float(np.sqrt(sum(part**2 for part in parts)))
+
+
+def total(parts: dict[str, float]) -> float:
+    """Root of the sum of squares."""
+    return float(np.sqrt(sum(part**2 for part in parts.values())))
