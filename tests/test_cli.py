@@ -98,6 +98,7 @@ def test_demo(tmp_path, run):
         "bench_filter.ecsv",
         "bench_scan.ecsv",
         "bench_scan_tilted.ecsv",
+        "array.toml",
     ]
     status, out, err = run("demo", str(tmp_path), setup=None)
     assert (status, out) == (2, "")

@@ -13,8 +13,8 @@ from whitefringe.scans import read_scan
 from whitefringe.setup import Setup
 
 LARKMOOR = Path(__file__).resolve().parents[1] / "notebooks" / "larkmoor"
-NAMES = ("bench.toml", "bench_filter.ecsv", "bench_scan.ecsv", "bench_scan_tilted.ecsv")
-TABLES = NAMES[1:]
+NAMES = ("bench.toml", "bench_filter.ecsv", "bench_scan.ecsv", "bench_scan_tilted.ecsv", "array.toml")
+TABLES = NAMES[1:4]
 
 
 @pytest.fixture(scope="module")
@@ -28,8 +28,9 @@ def test_nothing_else_is_written(written):
     assert sorted(path.name for path in written.iterdir()) == sorted(NAMES)
 
 
-def test_the_setup_in_the_repository_is_the_one_written(written):
-    assert (LARKMOOR / "bench.toml").read_bytes() == (written / "bench.toml").read_bytes()
+@pytest.mark.parametrize("name", ["bench.toml", "array.toml"])
+def test_the_setups_in_the_repository_are_the_ones_written(written, name):
+    assert (LARKMOOR / name).read_bytes() == (written / name).read_bytes()
 
 
 @pytest.mark.parametrize("name", TABLES)

@@ -20,7 +20,7 @@ def test_rows_are_complete(path):
     assert np.all(np.isfinite(table["value"]))
 
 
-@pytest.mark.parametrize("name", ["air", "closed_forms", "photometric", "sources", "thermal"])
+@pytest.mark.parametrize("name", ["air", "closed_forms", "geometry", "photometric", "sources", "thermal", "visibility"])
 def test_units_and_inputs_can_be_read(name):
     for row in Table.read(FOLDER / f"{name}.ecsv", format="ascii.ecsv"):
         u.Unit(str(row["unit"]))

@@ -16,7 +16,7 @@ FAULTS = {
     "bad TOML": ("[source\n", r"not valid TOML: .*line 1"),
     "unknown table": (
         GOOD + "[colour]\nx = 1\n",
-        "colour: unknown key; the keys here are name, source, filter, scan",
+        "colour: unknown key; the keys here are name, source, filter, tracking, air",
     ),
     "unknown key": (
         GOOD + '[scan]\nsignl = "a"\n',

@@ -1,4 +1,4 @@
-"""The command line: ``whitefringe measure``, ``predict``, ``light`` and ``demo``.
+"""The command line: ``whitefringe measure``, ``predict``, ``light``, ``track`` and ``demo``.
 
 Exit status: 0 within tolerance, 1 outside, 2 bad usage or input, 3 undecided or not measured.
 """
@@ -84,7 +84,12 @@ def _parser() -> argparse.ArgumentParser:
     light.add_argument("--above", metavar="CONTRAST", type=float, default=0.05, help="least height of a false packet (0.05)")
     light.add_argument("--plot", metavar="FILE", help="draw spectrum and packet to a .png, .svg or .pdf file")
     light.set_defaults(run=_light)
-    for command in (measure, predict, light):
+    track = commands.add_parser("track", help="write the night's table of path differences, and print when what can be observed")
+    track.add_argument("--date", metavar="D", help="date on whose evening the night begins, such as 2026-12-01 (by default the setup's)")
+    track.add_argument("--out", metavar="FILE", help="table to write: .ecsv or .fits (by default track_D.ecsv here)")
+    track.add_argument("--overwrite", action="store_true", help="replace a table that exists")
+    track.set_defaults(run=_track)
+    for command in (measure, predict, light, track):
         command.add_argument("--setup", metavar="FILE", required=True, help="setup file (TOML)")
         command.add_argument("--json", action="store_true", help="print JSON for machines")
     demo = commands.add_parser("demo", help="write the invented Larkmoor bench: setup, filter curve and scans")
@@ -127,14 +132,38 @@ def _predict(options: argparse.Namespace) -> int:
 
     setup = Setup.read(options.setup)
     prediction = predict_packet(setup.light, setup.definition)
+    arms, flags = _through_arms(setup)
     if options.json:
         numbers = {name: _json_of(value) for name, value in prediction.rows}
-        print(json.dumps({"setup": setup.name, "prediction": numbers, "caution": caution_of(setup)}, indent=2))
+        answer: dict[str, Any] = {"setup": setup.name, "prediction": numbers, "caution": caution_of(setup)}
+        if arms:
+            answer |= {"arms": {name: _json_of(value) for name, value in arms}, "flags": flags}
+        print(json.dumps(answer, indent=2))
     else:
         console = Console(markup=False, emoji=False, highlight=False)
-        console.print(_results_table(f"predicted packet: {setup.name}", prediction.rows))
+        what = "predicted packet of equal arms" if arms else "predicted packet"
+        console.print(_results_table(f"{what}: {setup.name}", prediction.rows))
+        if arms:
+            console.print(_results_table("with what the arms do to it", arms))
+        for flag in flags:
+            console.print(f"note: {flag}", soft_wrap=True)
         _print_caution(console, setup)
     return 0
+
+
+def _through_arms(setup: Any) -> tuple[list[tuple[str, Measured | str]], list[str]]:
+    """Rows of the dispersed packet and of the offset from the tracking band, and flags; nothing where the setup has no arms."""
+    if setup.arms is None:
+        return [], []
+    from .media import DispersedPacket, band_offset
+
+    packet = DispersedPacket(pair=setup.arms, light=setup.light)
+    rows, flags = list(packet.rows), list(packet.flags)
+    if setup.tracking_light is not None:
+        found = band_offset(setup.arms, setup.tracking_light, setup.light)
+        rows += [("offset from tracking band", found.offset), *found.rows[1:]]
+        flags = list(dict.fromkeys([*flags, *found.flags]))
+    return rows, flags
 
 
 def _light(options: argparse.Namespace) -> int:
@@ -163,6 +192,12 @@ def _light(options: argparse.Namespace) -> int:
     console.print(_packets_table(packets))
     _print_caution(console, setup)
     return 0
+
+
+def _track(options: argparse.Namespace) -> int:
+    from .cli_track import track_night
+
+    return track_night(options)
 
 
 def _print_caution(console: Console, setup: Any) -> None:

@@ -11,6 +11,7 @@ from pathlib import Path
 import astropy.units as u
 import numpy as np
 
+from .demo_array import write_array
 from .errors import FileContentError
 from .fringes import simulate_lamp_scan
 from .io import write_table, write_text
@@ -104,7 +105,7 @@ def bench_scan(filter_in_beam: Filter | None = None, *, seed: int = SEED, contra
 
 
 def write_bench(folder: str | Path, *, overwrite: bool = False) -> tuple[Path, ...]:
-    """Write the bench's setup, filter curve and two scans (filter upright, filter tilted) to a folder.
+    """Write the bench's setup, filter curve and two scans (filter upright, filter tilted), and the array's setup, to a folder.
 
     Raises
     ------
@@ -116,7 +117,7 @@ def write_bench(folder: str | Path, *, overwrite: bool = False) -> tuple[Path, .
     folder = Path(folder)
     if not folder.is_dir():
         raise FileContentError(f"{folder}: no such folder; make it first")
-    names = ("bench.toml", "bench_filter.ecsv", "bench_scan.ecsv", "bench_scan_tilted.ecsv")
+    names = ("bench.toml", "bench_filter.ecsv", "bench_scan.ecsv", "bench_scan_tilted.ecsv", "array.toml")
     paths = tuple(folder / name for name in names)
     for path in paths:
         if path.exists() and not overwrite:
@@ -136,4 +137,5 @@ def write_bench(folder: str | Path, *, overwrite: bool = False) -> tuple[Path, .
         )
         write_table(table, path, overwrite=overwrite)
     write_text(SETUP_TEXT, paths[0], overwrite=overwrite)
+    write_array(folder, overwrite=overwrite)
     return paths

@@ -24,23 +24,27 @@
 Any filter may also have ``tilt``, ``effective_index``, ``f_number``, ``obstruction``, ``warmed_by``, ``drift``, ``leak``, ``leak_low``,
 ``leak_high`` (see `spectra.in_beam`). A tolerance of ``"none"`` is not judged. Numbers with a unit are written as text, ``"2900 K"``.
 Files are looked for beside the setup file. A source of ``shape = "sum"`` has its parts as ``[[source.sources]]``; an emissivity or a
-reflectivity may be a file, ``{ file = "grey.csv" }``.
+reflectivity may be a file, ``{ file = "grey.csv" }``. ``[[tracking]]`` entries are the filters of a second band; the arms are described in
+`setup_arms`, the array and its night in `setup_sky`.
 """
 
 from __future__ import annotations
 
-from dataclasses import MISSING, dataclass, field, fields
+from dataclasses import dataclass, field
 from functools import cached_property
 from pathlib import Path
-from typing import Annotated, Any, Literal, get_type_hints
+from typing import TYPE_CHECKING, Any, Literal, get_type_hints
 
 import astropy.units as u
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError, create_model
+from pydantic import Field
 
 from .coherence import COHERENCE_DEFINITIONS, DEFAULT_DEFINITION
-from .errors import InputError, SetupError, WhitefringeError
+from .errors import InputError, SetupError
 from .io import read_toml
+from .media import ArmPair
 from .scans import ScanLayout, Tolerances
+from .setup_arms import read_arms
+from .setup_entries import Entry, KeyPath, QuantityText, UnitText, built, checked, member, read_beside, without_shape
 from .spectra import (
     FILTER_SHAPES,
     SOURCE_SHAPES,
@@ -60,83 +64,43 @@ from .spectra import (
 )
 from .units import as_si
 
-
-def _quantity(value: Any) -> Any:
-    if isinstance(value, u.Quantity) or value is None:
-        return value
-    if not isinstance(value, str):
-        raise ValueError(f'must be text with a unit, for example "1.65 um"; got {value!r}')
-    try:
-        quantity = u.Quantity(value)
-    except (TypeError, ValueError):
-        raise ValueError(f'must be a number with a unit, for example "1.65 um"; got {value!r}') from None
-    if quantity.unit == u.dimensionless_unscaled:
-        raise ValueError(f'must carry a unit, for example "1.65 um"; got {value!r}')
-    return quantity
-
-
-def _quantities(value: Any) -> Any:
-    return tuple(_quantity(item) for item in value) if isinstance(value, (list, tuple)) else _quantity(value)
-
-
-def _number_or_table(value: Any) -> Any:
-    if isinstance(value, WavelengthTable) or (isinstance(value, (int, float)) and not isinstance(value, bool)):
-        return value
-    raise ValueError(f'must be a number, or a table such as {{ file = "curve.csv" }}; got {value!r}')
-
-
-def _unit(value: Any) -> Any:
-    try:
-        return u.Unit(value)
-    except (TypeError, ValueError):
-        raise ValueError(f"{value!r} is not a unit that is known here") from None
-
-
-_Quantity = Annotated[Any, BeforeValidator(_quantity)]
-_Quantities = Annotated[Any, BeforeValidator(_quantities)]
-_NumberOrTable = Annotated[Any, BeforeValidator(_number_or_table)]
-_Unit = Annotated[Any, BeforeValidator(_unit)]
-_Limits = Annotated[tuple[float, float] | None, BeforeValidator(lambda value: None if value == "none" else value)]
-
+if TYPE_CHECKING:
+    from .sky import Observation
 
 MOST_CHANNELS = 200
 """Channels that a setup may ask for."""
 
 
-class _Entry(BaseModel):
-    model_config = ConfigDict(extra="forbid", arbitrary_types_allowed=True, strict=False)
-
-
-class _TableEntry(_Entry):
+class _TableEntry(Entry):
     file: str
-    wavelength_unit: _Unit = None
-    transmission_unit: _Unit = None
+    wavelength_unit: UnitText = None
+    transmission_unit: UnitText = None
     wavelength_column: str | int = 0
     transmission_column: str | int = 1
     repair: list[str] = Field(default_factory=list)
     medium: str | None = None
 
 
-class _BeamEntry(_Entry):
+class _BeamEntry(Entry):
     """What may happen to any filter in the beam: the arguments of `spectra.in_beam`."""
 
-    tilt: _Quantity = None
+    tilt: QuantityText = None
     effective_index: float | None = None
     f_number: float | None = None
     obstruction: float | None = None
-    warmed_by: _Quantity = None
-    drift: _Quantity = None
+    warmed_by: QuantityText = None
+    drift: QuantityText = None
     leak: float | None = None
-    leak_low: _Quantity = None
-    leak_high: _Quantity = None
+    leak_low: QuantityText = None
+    leak_high: QuantityText = None
 
 
-class _ValuesEntry(_Entry):
+class _ValuesEntry(Entry):
     """A file of wavelengths and values, for an emissivity, a reflectivity or the like."""
 
     file: str
-    wavelength_unit: _Unit = None
-    value_unit: _Unit = None
+    wavelength_unit: UnitText = None
+    value_unit: UnitText = None
     wavelength_column: str | int = 0
     value_column: str | int = 1
     medium: str | None = None
@@ -148,43 +112,31 @@ class _SourceTableEntry(_ValuesEntry):
     repair: list[str] = Field(default_factory=list)
 
 
-class _SumEntry(_Entry):
+class _SumEntry(Entry):
     sources: list[dict[str, Any]] = Field(min_length=1)
     weights: list[float] | None = None
 
 
-class _PredictionEntry(_Entry):
+class _PredictionEntry(Entry):
     contrast: float = Field(default=1.0, gt=0, le=1)
     coherence_length: str = DEFAULT_DEFINITION
     channels: int = Field(default=0, ge=0, le=MOST_CHANNELS)
 
 
-class _SetupEntry(_Entry):
+class _SetupEntry(Entry):
     name: str = "bench"
     source: dict[str, Any]
     filter: list[dict[str, Any]] = Field(default_factory=list)
+    tracking: list[dict[str, Any]] = Field(default_factory=list)
+    air: dict[str, Any] | None = None
+    first_arm: list[dict[str, Any]] = Field(default_factory=list)
+    second_arm: list[dict[str, Any]] = Field(default_factory=list)
+    array: dict[str, Any] | None = None
+    target: list[dict[str, Any]] = Field(default_factory=list)
+    night: dict[str, Any] | None = None
     scan: dict[str, Any] = Field(default_factory=dict)
     prediction: _PredictionEntry = Field(default_factory=_PredictionEntry)
     tolerances: dict[str, Any] = Field(default_factory=dict)
-
-
-def _entry_for(cls: type[Any]) -> type[BaseModel]:
-    """Return a pydantic model with the fields of a frozen dataclass, Quantities as text with a unit."""
-    hints = get_type_hints(cls)
-    entries: dict[str, Any] = {}
-    for item in fields(cls):
-        kind = hints[item.name]
-        members = getattr(kind, "__args__", ())
-        if WavelengthTable in members:
-            kind = _NumberOrTable
-        elif tuple[u.Quantity, ...] in members:
-            kind = _Quantities
-        elif kind is u.Quantity or u.Quantity in members:
-            kind = _Quantity
-        elif kind == tuple[float, float] | None:
-            kind = _Limits
-        entries[item.name] = (kind, ... if item.default is MISSING else item.default)
-    return create_model(cls.__name__, __base__=_Entry, **entries)
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -205,6 +157,12 @@ class Setup:
         Where panels put their delay cursor.
     channels : int
         Spectral channels that the band is split into; 0 for none.
+    tracking : tuple of Filter
+        Filters of a second band, in which fringes are followed; of the same source.
+    arms : ArmPair, optional
+        What the two arms are made of, where it differs.
+    observation : Observation, optional
+        The array, its targets and the night.
     name, origin : str
     """
 
@@ -216,6 +174,9 @@ class Setup:
     definition: str = DEFAULT_DEFINITION
     delay: u.Quantity = 0.0 * u.um
     channels: int = 0
+    tracking: tuple[Filter, ...] = ()
+    arms: ArmPair | None = None
+    observation: Observation | None = None
     name: str = "bench"
     origin: str = ""
 
@@ -224,6 +185,10 @@ class Setup:
             raise InputError("a setup needs a source such as spectra.Thermal and a tuple of filters such as (spectra.TopHat(...),)")
         if not isinstance(self.layout, ScanLayout) or not isinstance(self.tolerances, Tolerances):
             raise InputError("layout must be a scans.ScanLayout and tolerances a scans.Tolerances")
+        if not all(isinstance(item, Filter) for item in _tuple(self.tracking)):
+            raise InputError("tracking must be a tuple of filters such as (spectra.TopHat(...),)")
+        if self.arms is not None and not isinstance(self.arms, ArmPair):
+            raise InputError(f"arms must be a media.ArmPair; got {self.arms!r}")
         as_si(self.delay, u.m, "delay", "um")
         if isinstance(self.channels, bool) or not isinstance(self.channels, int) or not 0 <= self.channels <= MOST_CHANNELS:
             raise InputError(f"channels must be a whole number from 0 to {MOST_CHANNELS}; got {self.channels!r}")
@@ -238,6 +203,11 @@ class Setup:
         """What the detector counts: source times filters."""
         return detected(self.source, *self.filters)
 
+    @cached_property
+    def tracking_light(self) -> Spectrum | None:
+        """What a detector counts in the tracking band; None without one."""
+        return detected(self.source, *self.tracking) if self.tracking else None
+
     @classmethod
     def read(cls, path: str | Path) -> Setup:
         """Read a setup file.
@@ -249,16 +219,20 @@ class Setup:
         """
         path = Path(path)
         raw = read_toml(path)
-        entry = _checked(_SetupEntry, raw, path, "")
-        with _KeyPath(path, ""):
+        entry = checked(_SetupEntry, raw, path, "")
+        arms = read_arms({name: getattr(entry, name) for name in ("air", "first_arm", "second_arm")}, path)
+        with KeyPath(path, ""):
             return cls(
                 source=_source(entry.source, path),
                 filters=tuple(_filter(item, path, f"filter[{k}]") for k, item in enumerate(entry.filter)),
-                layout=_built(ScanLayout, entry.scan, path, "scan"),
-                tolerances=_built(Tolerances, entry.tolerances, path, "tolerances"),
+                layout=built(ScanLayout, entry.scan, path, "scan"),
+                tolerances=built(Tolerances, entry.tolerances, path, "tolerances"),
                 expected_contrast=entry.prediction.contrast,
                 channels=entry.prediction.channels,
                 definition=_definition(entry.prediction.coherence_length, path),
+                tracking=tuple(_filter(item, path, f"tracking[{k}]") for k, item in enumerate(entry.tracking)),
+                arms=arms,
+                observation=_observation(entry, arms, path),
                 name=entry.name,
                 origin=str(path),
             )
@@ -282,103 +256,58 @@ def _tuple(value: Any) -> tuple[Any, ...]:
     return value if isinstance(value, tuple) else (value, None)
 
 
-class _KeyPath:
-    """Turn an error of ours into a `SetupError` that carries file and key path."""
-
-    def __init__(self, path: Path, key: str) -> None:
-        self.prefix = f"{path}: {key}: " if key else f"{path}: "
-
-    def __enter__(self) -> None:
-        return None
-
-    def __exit__(self, kind: Any, error: BaseException | None, trace: Any) -> None:
-        if isinstance(error, WhitefringeError) and not isinstance(error, SetupError):
-            raise SetupError(f"{self.prefix}{error}") from None
-
-
-def _checked(model: type[BaseModel], raw: Any, path: Path, key: str) -> Any:
-    try:
-        return model.model_validate(raw)
-    except ValidationError as error:
-        first = error.errors()[0]
-        where = key + "".join(f"[{part}]" if isinstance(part, int) else f".{part}" for part in first["loc"])
-        names = ", ".join(model.model_fields)
-        hints = {"extra_forbidden": f"unknown key; the keys here are {names}", "missing": "this key is missing"}
-        message = hints.get(first["type"], first["msg"].removeprefix("Value error, "))
-        raise SetupError(f"{path}: {where.removeprefix('.')}: {message}") from None
-
-
-def _built(cls: type[Any], raw: Any, path: Path, key: str) -> Any:
-    entry = _checked(_entry_for(cls), raw, path, key)
-    with _KeyPath(path, key):
-        return cls(**{name: getattr(entry, name) for name in type(entry).model_fields})
-
-
-def _member(family: tuple[type[Any], ...], raw: dict[str, Any], path: Path, key: str) -> type[Any]:
-    for cls in family:
-        if cls.shape == raw.get("shape"):
-            return cls
-    names = ", ".join(cls.shape for cls in family)
-    raise SetupError(f"{path}: {key}.shape: must be one of {names}; got {raw.get('shape')!r}")
-
-
-def _without_shape(raw: dict[str, Any]) -> dict[str, Any]:
-    return {name: value for name, value in raw.items() if name != "shape"}
-
-
 def _with_tables(cls: type[Any], raw: dict[str, Any], path: Path, key: str) -> dict[str, Any]:
     """Read the files that stand for tables, such as ``reflectivity = { file = "silver.csv" }``."""
     hints = get_type_hints(cls)
     found = dict(raw)
     for name, value in raw.items():
         if isinstance(value, dict) and WavelengthTable in getattr(hints.get(name), "__args__", ()):
-            found[name] = _read(WavelengthTable.read, _ValuesEntry, value, path, f"{key}.{name}")
+            found[name] = read_beside(WavelengthTable.read, _ValuesEntry, value, path, f"{key}.{name}")
     return found
 
 
-def _read(reader: Any, model: type[BaseModel], raw: dict[str, Any], path: Path, key: str) -> Any:
-    """Check the entry of a file that lies beside the setup file, and read it."""
-    entry = _checked(model, raw, path, key)
-    options: dict[str, Any] = {name: getattr(entry, name) for name in model.model_fields if name != "file"}
-    if "repair" in options:
-        options["repair"] = tuple(options["repair"])
-    with _KeyPath(path, f"{key}.file"):
-        return reader(path.parent / entry.file, **options)
-
-
 def _source(raw: dict[str, Any], path: Path, key: str = "source") -> Source:
-    cls, rest = _member(SOURCE_SHAPES, raw, path, key), _without_shape(raw)
+    cls, rest = member(SOURCE_SHAPES, raw, path, key), without_shape(raw)
     if cls is Lines:
         return _lines(rest, path, key)
     if cls is TabulatedSource:
-        return _read(TabulatedSource.read, _SourceTableEntry, rest, path, key)  # type: ignore[no-any-return]
+        return read_beside(TabulatedSource.read, _SourceTableEntry, rest, path, key)  # type: ignore[no-any-return]
     if cls is Together:
-        entry = _checked(_SumEntry, rest, path, key)
+        entry = checked(_SumEntry, rest, path, key)
         members = tuple(_source(item, path, f"{key}.sources[{k}]") for k, item in enumerate(entry.sources))
-        with _KeyPath(path, key):
+        with KeyPath(path, key):
             return Together(sources=members, weights=None if entry.weights is None else tuple(entry.weights))
-    return _built(cls, _with_tables(cls, rest, path, key), path, key)  # type: ignore[no-any-return]
+    return built(cls, _with_tables(cls, rest, path, key), path, key)  # type: ignore[no-any-return]
 
 
 def _lines(rest: dict[str, Any], path: Path, key: str) -> Lines:
     members = rest.pop("lines", [])
     if rest or not isinstance(members, list) or not members:
         raise SetupError(f"{path}: {key}: a lamp of lines has one or more [[{key}.lines]] entries and no other key")
-    with _KeyPath(path, f"{key}.lines"):
-        return Lines([_built(Line, item, path, f"{key}.lines[{k}]") for k, item in enumerate(members)])
+    with KeyPath(path, f"{key}.lines"):
+        return Lines([built(Line, item, path, f"{key}.lines[{k}]") for k, item in enumerate(members)])
 
 
 def _filter(raw: dict[str, Any], path: Path, key: str) -> Filter:
-    cls = _member((*FILTER_SHAPES, *TRAIN_SHAPES), raw, path, key)
+    cls = member((*FILTER_SHAPES, *TRAIN_SHAPES), raw, path, key)
     stated = {name: value for name, value in raw.items() if name in _BeamEntry.model_fields}
-    rest = {name: value for name, value in _without_shape(raw).items() if name not in stated}
+    rest = {name: value for name, value in without_shape(raw).items() if name not in stated}
     if cls is Tabulated:
-        band = _read(read_filter, _TableEntry, rest, path, key)
+        band = read_beside(read_filter, _TableEntry, rest, path, key)
     else:
-        band = _built(cls, _with_tables(cls, rest, path, key), path, key)
-    beam = _checked(_BeamEntry, stated, path, key)
-    with _KeyPath(path, key):
+        band = built(cls, _with_tables(cls, rest, path, key), path, key)
+    beam = checked(_BeamEntry, stated, path, key)
+    with KeyPath(path, key):
         return in_beam(band, **{name: getattr(beam, name) for name in stated})
+
+
+def _observation(entry: _SetupEntry, arms: ArmPair | None, path: Path) -> Observation | None:
+    raw = {name: getattr(entry, name) for name in ("array", "target", "night")}
+    if not any(raw.values()):
+        return None
+    from .setup_sky import read_observation  # loads astropy.coordinates, which a bench does not need
+
+    return read_observation(raw, arms.air if arms is not None else None, path)
 
 
 def _definition(name: str, path: Path) -> str:

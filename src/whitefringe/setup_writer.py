@@ -11,6 +11,7 @@ import numpy as np
 
 from .errors import SetupError
 from .io import toml_text, write_table, write_text
+from .setup_arms import write_arms
 from .spectra import BEAM_EFFECTS, InCone, Leaky, Lines, Tabulated, TabulatedSource, Tilted, Together, Warmed, WavelengthTable
 
 if TYPE_CHECKING:
@@ -46,6 +47,9 @@ def write_setup(setup: Setup, path: str | Path, *, overwrite: bool = False) -> t
         "name": setup.name,
         "source": _source(setup.source, path, tables),
         "filter": [_filter(item, path, k, tables) for k, item in enumerate(setup.filters)],
+        "tracking": [_filter(item, path, k, tables, "tracking") for k, item in enumerate(setup.tracking)],
+        **write_arms(setup.arms, path, _text),
+        **_observation(setup, path),
         "scan": _stated(setup.layout, path, tables, "scan"),
         "prediction": {
             "contrast": setup.expected_contrast,
@@ -75,9 +79,17 @@ def _source(source: Any, path: Path, tables: dict[Path, Any]) -> dict[str, Any]:
     return {"shape": source.shape, **_stated(source, path, tables, "source")}
 
 
-def _filter(band: Any, path: Path, index: int, tables: dict[Path, Any]) -> dict[str, Any]:
+def _observation(setup: Setup, path: Path) -> dict[str, Any]:
+    if setup.observation is None:
+        return {}
+    from .setup_sky import write_observation
+
+    return write_observation(setup.observation, path, _text, lambda shape, without=(): _stated(shape, path, {}, "sky", without))
+
+
+def _filter(band: Any, path: Path, index: int, tables: dict[Path, Any], what: str = "filter") -> dict[str, Any]:
     effects, bare = _effects_of(band, path, index)
-    stem = f"filter{index + 1}"
+    stem = f"{what}{index + 1}"
     if isinstance(bare, Tabulated):
         curve = bare.curve
         file = _beside(path, stem)
@@ -109,13 +121,13 @@ def _effects_of(band: Any, path: Path, index: int) -> tuple[dict[str, Any], Any]
     return entries, band
 
 
-def _stated(shape: Any, path: Path, tables: dict[Path, Any], stem: str) -> dict[str, Any]:
+def _stated(shape: Any, path: Path, tables: dict[Path, Any], stem: str, without: tuple[str, ...] = ()) -> dict[str, Any]:
     """Fields of a frozen object that differ from their defaults."""
     entries: dict[str, Any] = {}
     for item in fields(shape):
         value = getattr(shape, item.name)
         default = None if item.default is MISSING else item.default
-        if not item.init or value is None or (type(value) is type(default) and bool(np.all(value == default))):
+        if item.name in without or not item.init or value is None or (type(value) is type(default) and bool(np.all(value == default))):
             continue
         entries[item.name] = _value(value, path, tables, f"{stem}_{item.name}")
     return entries

@@ -244,20 +244,21 @@ def _line(error: BaseException) -> str:
 
 
 def write_table(table: Table, path: str | Path, *, overwrite: bool = False) -> Path:
-    """Write a table as ECSV, whole or not at all: first beside its place, then moved there.
+    """Write a table as FITS (a name that ends so) or else as ECSV, whole or not at all: first beside its place, then moved there.
 
     Raises
     ------
     FileContentError
-        The file exists and `overwrite` is false.
+        The file exists and `overwrite` is false, or there is no folder to write to.
     """
     path = Path(path)
     if path.exists() and not overwrite:
         raise FileContentError(f"{path}: the file exists; say overwrite=True to replace it")
     if not path.parent.is_dir():
         raise FileContentError(f"{path}: there is no folder {path.parent} to write to")
+    kind = "fits" if path.name.lower().endswith(FITS_ENDINGS) else "ascii.ecsv"
     with atomic(path) as part:
-        table.write(part, format="ascii.ecsv", overwrite=True)
+        table.write(part, format=kind, overwrite=True)
     return path
 
 

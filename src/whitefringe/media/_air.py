@@ -12,10 +12,10 @@ import numpy as np
 
 from ..errors import InputError, UnitsError
 from ..parameters import parameter
-from ..units import PPM, SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, as_temperature_si, positive_si
+from ..units import PPM, SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, positive_si
 from ._derivatives import times_wavenumber
-from .medium import Medium, Range, dimensionless_si
-from .moist_air import SATURATION_FORMS
+from .medium import Medium, Range, one_temperature_si
+from .moist_air import SATURATION_FORMS, saturation_si
 
 CONDITIONS = ("temperature", "pressure", "humidity")
 """Names of what acts on air."""
@@ -119,7 +119,7 @@ class Air(Medium):
     @cached_property
     def temperature_si(self) -> float:
         """Temperature [K]."""
-        return float(as_temperature_si(self.temperature))
+        return one_temperature_si(self.temperature)
 
     @cached_property
     def pressure_si(self) -> float:
@@ -128,7 +128,7 @@ class Air(Medium):
 
     def saturated_si(self, temperature: float) -> float:
         """Saturation vapour pressure [Pa] at a temperature [K]."""
-        return SATURATION_FORMS[self.saturation](temperature)
+        return saturation_si(temperature, self.saturation)
 
     @cached_property
     def _saturated_si(self) -> float:
@@ -137,14 +137,14 @@ class Air(Medium):
     @cached_property
     def vapour_pressure_si(self) -> float:
         """Partial pressure of the water vapour [Pa], by the pure saturation pressure (no enhancement factor)."""
-        if as_quantity(self.humidity, "humidity", HUMIDITY).unit.is_equivalent(u.Pa):
-            return float(as_si(self.humidity, u.Pa, "humidity"))
-        try:
-            return dimensionless_si(self.humidity, "humidity", HUMIDITY) * self._saturated_si
-        except UnitsError:
-            raise
-        except InputError:
-            raise UnitsError(f"humidity must be {HUMIDITY}; got {self.humidity}") from None
+        quantity = as_quantity(self.humidity, "humidity", HUMIDITY)
+        if quantity.ndim:
+            raise InputError(f"humidity must be one number ({HUMIDITY}); got {self.humidity}")
+        if quantity.unit.is_equivalent(u.Pa):
+            return float(quantity.to_value(u.Pa))
+        if quantity.unit.is_equivalent(u.dimensionless_unscaled):
+            return float(quantity.to_value(u.dimensionless_unscaled)) * self._saturated_si
+        raise UnitsError(f"humidity must be {HUMIDITY}; got {self.humidity}")
 
     @property
     def relative_humidity(self) -> float:

@@ -2,20 +2,29 @@
 
 from __future__ import annotations
 
+import warnings
 from collections.abc import Callable
 from functools import cached_property
 
 import numpy as np
 
 from ..coherence.degree import ComplexArray, sum_of_turns
+from ..errors import ResolutionWarning
 from ..spectra import Line, Spectrum
 from ..units import SPEED_OF_LIGHT, FloatArray
+from .arms import band_si
 
 FEW, MANY = 3, 10
 """Gauss-Legendre points per cell of the spectrum: for delays well inside what the grid resolves, and beyond."""
 
 NEAR = 0.03
 """Delays up to this part of one over the grid's step count as well inside: three points are then right to 1e-10."""
+
+ROUNDING = 3e-9
+"""Path differences of 100 m are rounded to 1e-14 m, 2e-9 of a turn over a wide band: so far they still count as equally spaced."""
+
+RESOLVED = 0.5
+"""Delays up to this part of one over the grid's step are what the grid resolves."""
 
 
 class PhasedTransform:
@@ -37,8 +46,8 @@ class PhasedTransform:
 
     @cached_property
     def _spread(self) -> float:
-        """How far [m] the group delay of the continuum wanders from that of the mean frequency."""
-        ends = np.linspace(self.light.frequency_si[0], self.light.frequency_si[-1], 9) / SPEED_OF_LIGHT
+        """How far [m] the group delay of the band wanders from that of the mean frequency."""
+        ends = np.linspace(*band_si(self.light), 9) / SPEED_OF_LIGHT
         return float(np.max(np.abs(self._cycles(ends)[1] - self.group_opd)))
 
     def _phase_and_slope(self, line: Line) -> tuple[float, float]:
@@ -62,10 +71,15 @@ class PhasedTransform:
 
     def _continuum(self, tau: FloatArray) -> ComplexArray:
         reach = (float(np.max(np.abs(tau))) + self._spread / SPEED_OF_LIGHT) * self.light.step_si
-        start = self.light.start_si
+        _warn_if_unresolved(reach)
+        turns = _evened(self.light.step_si * tau, self.light.density.size)
+        middle = self.light.density.size // 2
+        start = self.light.start_si + middle * self.light.step_si
         total: ComplexArray = np.zeros(tau.shape, dtype=complex)
         for place, values in self._at_nodes(FEW if reach < NEAR else MANY):
-            total += np.exp(-2j * np.pi * (start + place) * tau) * sum_of_turns(values, self.light.step_si * tau)
+            total += np.exp(-2j * np.pi * (start + place) * tau) * sum_of_turns(values, turns)
+        # the sum runs from the band's lower end, its carrier stands in the middle: rounded path differences then matter least
+        total *= np.exp(2j * np.pi * middle * turns)
         return np.asarray(total * np.exp(-2j * np.pi * self._constant))
 
     def _at_nodes(self, count: int) -> list[tuple[float, ComplexArray]]:
@@ -76,11 +90,32 @@ class PhasedTransform:
             rows: list[tuple[float, ComplexArray]] = []
             for point, weight in zip(points, weights, strict=True):
                 sigma = (light.frequency_si + 0.5 * point * step) / SPEED_OF_LIGHT
-                rest = self._cycles(sigma)[0] - self.group_opd * sigma - self._constant
                 density = light.density + 0.5 * point * light.slopes
-                rows.append((float(0.5 * (1 + point) * step), 0.5 * weight * step * density * np.exp(-2j * np.pi * rest)))
+                rows.append((float(0.5 * (1 + point) * step), 0.5 * weight * step * density * self._turns(sigma)))
             self._nodes[count] = rows
         return self._nodes[count]
+
+    def _turns(self, sigma: FloatArray) -> ComplexArray:
+        """exp(-2 pi i cycles) less what is common; zero where a medium has no index, which can be in the far wings of a band only."""
+        with np.errstate(invalid="ignore", divide="ignore", over="ignore"):
+            rest = self._cycles(sigma)[0] - self.group_opd * sigma - self._constant
+            return np.where(np.isfinite(rest), np.exp(-2j * np.pi * rest), 0.0)
+
+
+def _evened(turns: FloatArray, cells: int) -> FloatArray:
+    """Equally spaced phases where these are so but for rounding."""
+    even = np.linspace(turns[0], turns[-1], turns.size)
+    return even if np.max(np.abs(turns - even)) * cells < ROUNDING else turns
+
+
+def _warn_if_unresolved(reach: float) -> None:
+    if reach > RESOLVED:
+        warnings.warn(
+            f"path difference and dispersion together are {reach / RESOLVED:.3g} times what this spectral grid resolves (half of one "
+            "over its step); structure finer than the grid is not in the result: ask for more samples, or add lines as lines",
+            ResolutionWarning,
+            stacklevel=6,
+        )
 
 
 def _centre(light: Spectrum) -> float:

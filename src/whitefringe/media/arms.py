@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+import math
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import Any
 
@@ -94,10 +95,11 @@ class ArmPair:
 
     def __post_init__(self) -> None:
         for name in ("first", "second"):
-            arm = tuple(getattr(self, name))
+            given = getattr(self, name)
+            arm = tuple(given) if isinstance(given, Iterable) else (given,)
             object.__setattr__(self, name, arm)
-            if not all(isinstance(item, Segment) for item in arm):
-                raise InputError(f"{name} must be a list of media.Segment; got {getattr(self, name)!r}")
+            if not isinstance(given, Iterable) or not all(isinstance(item, Segment) for item in arm):
+                raise InputError(f"{name} must be a list of media.Segment; got {given!r}")
 
     @property
     def signed(self) -> Iterator[tuple[float, Segment]]:
@@ -108,7 +110,7 @@ class ArmPair:
     @cached_property
     def geometric_si(self) -> float:
         """Difference of the geometric lengths [m]."""
-        return float(sum(sign * item.length_si for sign, item in self.signed))
+        return math.fsum(sign * item.length_si for sign, item in self.signed)
 
     def refraction_si(self, wavenumber: FloatArray) -> FloatArray:
         """Sum of (n - 1) L sigma with its sign, in cycles, and its first three derivatives with wavenumber [1/m]: shape (4, ...)."""
@@ -131,7 +133,7 @@ class ArmPair:
 
     def flags(self, *lights: Spectrum) -> tuple[str, ...]:
         """Return flags of what is extrapolated in these lights; raise where it may not be. The last 1e-3 of a light's rate is not asked."""
-        return self.check_si(np.array([band_si(light) for light in lights]).ravel() / SPEED_OF_LIGHT)
+        return self.check_si(np.concatenate([asked_si(light) for light in lights]) / SPEED_OF_LIGHT)
 
     def opd(self, wavelength: Any) -> u.Quantity:
         """Return the phase path difference: sum of n L over the second arm less that over the first [m].
@@ -150,11 +152,17 @@ class ArmPair:
 
     def phase_delay(self, wavelength: Any) -> u.Quantity:
         """Return the phase delay, `opd` over c [fs]."""
-        return (self.opd(wavelength) / (SPEED_OF_LIGHT * u.m / u.s)).to(u.fs)
+        sigma, flags = self._checked(wavelength)
+        return _flagged(self._over_c(self.refraction_si(sigma)[0] / sigma), flags)
 
     def group_delay(self, wavelength: Any) -> u.Quantity:
         """Return the group delay d(omega opd / c)/domega, `group_opd` over c [fs]."""
-        return (self.group_opd(wavelength) / (SPEED_OF_LIGHT * u.m / u.s)).to(u.fs)
+        sigma, flags = self._checked(wavelength)
+        return _flagged(self._over_c(self.refraction_si(sigma)[1]), flags)
+
+    def _over_c(self, refraction: FloatArray) -> u.Quantity:
+        """A path difference [m] with that of the geometry, as a time."""
+        return (self.geometric_si + refraction) / SPEED_OF_LIGHT * 1e15 * u.fs
 
     def group_delay_dispersion(self, wavelength: Any) -> u.Quantity:
         """Return the dispersion of order 2, d^2(omega opd / c)/domega^2 [fs^2]."""
@@ -171,6 +179,19 @@ class ArmPair:
         return sigma, self.check_si(sigma)
 
     @property
+    def air(self) -> Medium | None:
+        """The air of the first segment that is air, or None."""
+        return next((item.medium for _, item in self.signed if item.medium.is_air), None)
+
+    def in_air(self, **conditions: Any) -> ArmPair:
+        """Return the pair with all its air under other conditions (temperature, pressure, humidity); segments keep their own."""
+
+        def changed(item: Segment) -> Segment:
+            return replace(item, medium=item.medium.under(**conditions)) if item.medium.is_air else item
+
+        return ArmPair(first=[changed(item) for item in self.first], second=[changed(item) for item in self.second])
+
+    @property
     def has_air(self) -> bool:
         """Whether any segment is air."""
         return any(item.medium.is_air for _, item in self.signed)
@@ -178,14 +199,31 @@ class ArmPair:
 
 def band_si(light: Spectrum) -> tuple[float, float]:
     """Frequencies [Hz] between which all but 1e-3 of the light's rate lies, half of that on either side."""
+    frequency, rate = _rates(light)
+    share = np.cumsum(rate)
+    inside = frequency[(share > 5e-4) & (share - rate < 1 - 5e-4)]
+    return float(inside[0]), float(inside[-1])
+
+
+def asked_si(light: Spectrum) -> FloatArray:
+    """Frequencies [Hz] at which a formula must hold: the band of `band_si` but for its faintest cells, 1e-3 of the rate together.
+
+    Not the band's ends alone: a formula may have gaps inside it.
+    """
+    frequency, rate = _rates(light)
+    low, high = band_si(light)
+    rising = np.sort(rate)
+    faint = rising[np.searchsorted(np.cumsum(rising), 1e-3)]
+    return np.array([low, *frequency[(frequency > low) & (frequency < high) & (rate >= faint)], high])
+
+
+def _rates(light: Spectrum) -> tuple[FloatArray, FloatArray]:
+    """Frequencies [Hz] of cells and lines, rising, and the share of the rate in each."""
     lines = [(line.frequency_si, line.strength) for line in light.lines if line.strength > 0]
     frequency = np.concatenate([light.frequency_si, [place for place, _ in lines]])
     rate = np.concatenate([light.density * light.step_si, [strength for _, strength in lines]]) / light.total_rate
     order = np.argsort(frequency)
-    frequency, rate = frequency[order], rate[order]
-    share = np.cumsum(rate)
-    inside = frequency[(share > 5e-4) & (share - rate < 1 - 5e-4)]
-    return float(inside[0]), float(inside[-1])
+    return frequency[order], rate[order]
 
 
 def _flagged(value: u.Quantity, flags: tuple[str, ...]) -> u.Quantity:

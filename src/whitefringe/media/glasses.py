@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
-from functools import cached_property
+from functools import cache, cached_property
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, ClassVar, Self
 
@@ -12,10 +12,10 @@ import numpy as np
 
 from ..errors import FileContentError, InputError, UnitsError
 from ..io import read_packaged, read_table
-from ..units import FloatArray, as_si, as_temperature_si, read_only
-from ._derivatives import composed, poles, product, rescaled, root_of_one_plus, times_wavenumber
+from ..units import FloatArray, as_si, read_only
+from ._derivatives import composed, poles, polynomial, product, rescaled, root_of_one_plus, times_wavenumber
 from .air import PER_MICROMETRE, Ciddor1996
-from .medium import Medium, Range
+from .medium import Medium, Range, one_temperature_si
 from .thermal import ThermalCoefficients, packaged_coefficients
 
 if TYPE_CHECKING:
@@ -28,7 +28,7 @@ TERMS = 4
 NEEDED = ("name", "form", "b1", "c1", "low", "high", "temperature", "relative_to", "source")
 
 
-@dataclass(frozen=True, kw_only=True)
+@dataclass(frozen=True, kw_only=True, eq=False)
 class Glass(Medium):
     """A glass or crystal: n^2 - 1 = sum over j of b_j L^2 / (L^2 - c_j), L the wavelength.
 
@@ -92,6 +92,8 @@ class Glass(Medium):
                 f"{self.name}: strengths and resonances must be two rows of the same length; got shapes {np.shape(self.strengths)} and "
                 f"{np.shape(squares)}"
             )
+        if not np.all(np.isfinite(self.strengths)):
+            raise InputError(f"{self.name}: strengths must be finite; got {self.strengths}")
         if self.relative_to not in REFERENCES:
             raise InputError(f'{self.name}: relative_to must be "air" or "vacuum"; got {self.relative_to!r}')
         if not 0 < self._ends[0] < self._ends[1]:
@@ -106,7 +108,7 @@ class Glass(Medium):
             raise InputError(
                 f"{self.name}: it has no temperature coefficients, so only its own temperature will do, {self.temperature}; got {self.now}"
             )
-        words = self.thermal.outside(float(as_temperature_si(self.now)) - 273.15) if change and self.thermal is not None else ""
+        words = self.thermal.outside(one_temperature_si(self.now, "now") - 273.15) if change and self.thermal is not None else ""
         if words and not self.extrapolate:
             raise InputError(f"{self.name}: {words}; say extrapolate=True to have the result flagged")
 
@@ -158,10 +160,10 @@ class Glass(Medium):
     @property
     def _warmer(self) -> float:
         """Kelvin above the formula's own temperature."""
-        return 0.0 if self.now is None else float(as_temperature_si(self.now, "now")) - float(as_temperature_si(self.temperature))
+        return 0.0 if self.now is None else one_temperature_si(self.now, "now") - one_temperature_si(self.temperature)
 
     def _condition_flags(self) -> tuple[str, ...]:
-        words = self.thermal.outside(float(as_temperature_si(self.now)) - 273.15) if self._warmer and self.thermal is not None else ""
+        words = self.thermal.outside(one_temperature_si(self.now, "now") - 273.15) if self._warmer and self.thermal is not None else ""
         return (f"{self.name} extrapolated: {words}",) if words else ()
 
     def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
@@ -174,8 +176,11 @@ class Glass(Medium):
         return rescaled(_less_one(index), PER_MICROMETRE)
 
     def _sellmeier(self, s: FloatArray) -> FloatArray:
-        """n, from n^2 - 1 = sum of (b / c) / (1 / c - s^2)."""
-        return _plus_one(root_of_one_plus(poles(s, self.strengths / self._squares, 1 / self._squares)))
+        """n, from n^2 - 1 = sum of (b / c) / (1 / c - s^2); a term without resonance (c = 0) is the constant b."""
+        bound = self._squares != 0
+        b, c = self.strengths[bound], self._squares[bound]
+        square = poles(s, b / c, 1 / c) + polynomial(s, [np.sum(self.strengths[~bound])])
+        return _plus_one(root_of_one_plus(square))
 
     def _absolute(self, s: FloatArray) -> FloatArray:
         air = _plus_one(rescaled(self._reference_air.refractivity_si(s / PER_MICROMETRE), 1 / PER_MICROMETRE))
@@ -195,6 +200,7 @@ def _less_one(index: FloatArray) -> FloatArray:
     return np.concatenate([index[:1] - 1.0, index[1:]])
 
 
+@cache
 def packaged_glasses() -> tuple[Glass, ...]:
     """Return the packaged glasses, each with its source; N-BK7 with its temperature coefficients."""
     return _glasses(read_packaged("glasses.ecsv"), "glasses.ecsv")
@@ -237,6 +243,9 @@ def _glass(table: Table, row: Row) -> Glass:
     if str(row["form"]) not in FORMS:
         raise InputError(f'column form: must be "length" or "length squared"; got {str(row["form"])!r}')
     names = [k for k in range(1, TERMS + 1) if f"b{k}" in table.colnames and float(row[f"b{k}"]) != 0]
+    alone = [k for k in names if f"c{k}" not in table.colnames]
+    if alone:
+        raise InputError(f"column b{alone[0]}: there is no column c{alone[0]} to go with it")
     unit = u.um if str(row["form"]) == "length" else u.um**2
     name = str(row["name"])
     return Glass(

@@ -9,7 +9,7 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import InputError
-from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity
+from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_temperature_si
 from ._derivatives import times_wavenumber
 
 ADVICE = "use a medium that is stated there (media.TwoModelAir joins two air models), or say extrapolate=True to have the result flagged"
@@ -27,6 +27,8 @@ class Range:
 
     def outside(self, values: Any) -> str:
         """Say which of the values lie outside, or return nothing."""
+        if not np.size(values):
+            return ""
         low, high = float(np.min(values)), float(np.max(values))
         slack = 1e-9 * (self.high - self.low)  # a value typed in another unit may miss an end by rounding
         if low >= self.low - slack and high <= self.high + slack:
@@ -159,9 +161,9 @@ class Vacuum(Medium):
         return np.zeros((4, *np.shape(wavenumber)))
 
 
-def dimensionless_si(value: Any, name: str, example: str) -> float:
-    """Return a Quantity without dimension (such as percent) as one fraction; a bare number is refused."""
-    quantity = as_quantity(value, name, example)
-    if not quantity.unit.is_equivalent(u.dimensionless_unscaled) or quantity.ndim:
-        raise InputError(f"{name} must be one number ({example}); got {value}")
-    return float(quantity.to_value(u.dimensionless_unscaled))
+def one_temperature_si(value: Any, name: str = "temperature") -> float:
+    """Return one temperature in kelvin."""
+    kelvin = as_temperature_si(value, name)
+    if np.ndim(kelvin):
+        raise InputError(f"{name} must be one number; got an array of shape {np.shape(kelvin)}")
+    return float(kelvin)

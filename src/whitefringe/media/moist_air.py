@@ -8,10 +8,14 @@ from typing import Any
 import astropy.units as u
 
 from ..errors import InputError
-from ..units import as_si, as_temperature_si
+from ..units import as_si
+from .medium import one_temperature_si
 
 FREEZING = 273.15
 """Below this temperature [K], saturation is taken over ice, as the NIST documentation does."""
+
+SATURATED = (190.0, 647.0)
+"""Temperatures [K] from the lowest of the ice formula to the critical point of water (from memory)."""
 
 
 def saturation_vapour_pressure(temperature: Any, form: str = "iapws") -> u.Quantity:
@@ -31,7 +35,7 @@ def saturation_vapour_pressure(temperature: Any, form: str = "iapws") -> u.Quant
     Raises
     ------
     InputError
-        Unknown form.
+        Unknown form, or a temperature beyond what the formulas are for.
 
     References
     ----------
@@ -45,7 +49,18 @@ def saturation_vapour_pressure(temperature: Any, form: str = "iapws") -> u.Quant
     """
     if form not in SATURATION_FORMS:
         raise InputError(f"form must be one of {', '.join(SATURATION_FORMS)}; got {form!r}")
-    return SATURATION_FORMS[form](float(as_temperature_si(temperature))) * u.Pa
+    return saturation_si(one_temperature_si(temperature), form) * u.Pa
+
+
+def saturation_si(T: float, form: str) -> float:
+    """Twin of `saturation_vapour_pressure`: kelvin in, pascal out."""
+    low, high = SATURATED
+    if not low <= T <= high:
+        raise InputError(
+            f"temperature {T:.6g} K lies outside {low:g} to {high:g} K, where the saturation pressure of ice and water is known; "
+            "give a temperature of air"
+        )
+    return SATURATION_FORMS[form](T)
 
 
 def _cipm(T: float) -> float:
@@ -96,7 +111,7 @@ def enhancement_factor(pressure: Any, temperature: Any) -> float:
     >>> round(enhancement_factor(110 * u.kPa, 30 * u.deg_C), 4)
     1.0046
     """
-    return enhancement_si(float(as_si(pressure, u.Pa, "pressure", "hPa")), float(as_temperature_si(temperature)))
+    return enhancement_si(float(as_si(pressure, u.Pa, "pressure", "hPa")), one_temperature_si(temperature))
 
 
 def enhancement_si(p: float, T: float) -> float:

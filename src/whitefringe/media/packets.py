@@ -86,6 +86,18 @@ class DispersedPacket:
         """Twin of `degree`: path differences in metres."""
         return self._transform(np.asarray(opd, dtype=float) + self.pair.geometric_si)
 
+    def about_zero_si(self, offset: FloatArray) -> ComplexArray:
+        """Like `degree_si`, at path differences [m] from `zero`: exact to 1e-11 of a turn however unequal the arms are."""
+        return self._transform.about(np.asarray(offset, dtype=float))
+
+    @property
+    def zero(self) -> Measured:
+        """Added path difference at which the group delay of the mean frequency is balanced."""
+        return Measured(
+            value=(self._zero_si * u.m).to(u.um),
+            definition="path difference, added in vacuum, that balances the mean frequency's group delay",
+        )
+
     @cached_property
     def _zero_si(self) -> float:
         """Added path difference [m] at which the group delay of the mean frequency is balanced."""
@@ -109,9 +121,14 @@ class DispersedPacket:
         return float(np.ptp(group))
 
     @cached_property
+    def reach_si(self) -> float:
+        """How far [m] either way from `zero` the packet is looked for: no contrast worth a name lies beyond."""
+        return 2 * self.undispersed_width_si + 1.5 * self._spread_si
+
+    @cached_property
     def _sampled(self) -> tuple[FloatArray, FloatArray]:
         """Path differences from `_zero_si` about the packet, and |gamma| there."""
-        half = 2 * self.undispersed_width_si + 1.5 * self._spread_si
+        half = self.reach_si
         count = int(np.ceil(2 * half / self.undispersed_width_si * PER_WIDTH)) | 1
         if count > MOST:
             raise UndefinedWidthError(
@@ -208,7 +225,7 @@ class DispersedPacket:
         for name in ("peak_contrast", "position", "centre", "width", "broadening", "asymmetry"):
             try:
                 found.append((name.replace("_", " "), getattr(self, name)))
-            except UndefinedWidthError as reason:
+            except (InputError, UndefinedWidthError) as reason:
                 found.append((name.replace("_", " "), str(reason)))
         return tuple(found)
 
@@ -220,8 +237,10 @@ def centre_si(pair: ArmPair, light: Spectrum, **shift: Any) -> float:
     of lines only has no such centre: its lines count by their squared strengths. `shift` as for `ArmPair.refraction_shifted_si`.
     """
     sigma, weight = _weights(light)
-    group = pair.refraction_shifted_si(sigma, **shift)[1]
-    return -(pair.geometric_si + float(np.sum(weight * group) / np.sum(weight)))
+    with np.errstate(invalid="ignore", divide="ignore", over="ignore"):
+        group = pair.refraction_shifted_si(sigma, **shift)[1]
+    there = np.isfinite(group)  # a medium may have no index in the far wings of a band
+    return -(pair.geometric_si + float(np.sum(weight[there] * group[there]) / np.sum(weight[there])))
 
 
 def _weights(light: Spectrum) -> tuple[FloatArray, FloatArray]:

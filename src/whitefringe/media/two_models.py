@@ -10,7 +10,7 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import InputError
-from ..units import FloatArray, as_si
+from ..units import SPEED_OF_LIGHT, FloatArray, one_frequency_si
 from ._air import CONDITIONS, Air
 from .medium import Medium
 
@@ -29,9 +29,9 @@ class TwoModelAir(Medium):
 
     Notes
     -----
-    Between Ciddor 1996 (at Mathar's 370 ppm of CO2) and Mathar 2007 the step is about 5e-8: 5 um of path per 100 m of air that is
-    not balanced. Neither model is known to be the right one at that level. `step` says it, and every result that such air
-    enters carries it as a flag.
+    Between Ciddor 1996 (at Mathar's 370 ppm of CO2) and Mathar 2007 the step is about 5e-8 in dry air of sea level, 5 um of path per
+    100 m of air that is not balanced, and less in moist air. Neither model is known to be the right one at that level. `step` says
+    it, and every result that such air enters carries it as a flag.
 
     Examples
     --------
@@ -54,6 +54,7 @@ class TwoModelAir(Medium):
             raise InputError("short and long must be air models such as media.Ciddor1996(...) and media.Mathar2007(...)")
         if not np.allclose(self.short.state_si, self.long.state_si, rtol=1e-9):
             raise InputError(f"both models must have the same temperature, pressure and humidity; got {self.short} and {self.long}")
+        one_frequency_si(self.meet, "meet")
         self.short.flags(self.meet)
         self.long.flags(self.meet)
 
@@ -64,7 +65,7 @@ class TwoModelAir(Medium):
 
     @cached_property
     def _meet_si(self) -> float:
-        return float(1 / as_si(self.meet, u.m, "meet", "um"))
+        return one_frequency_si(self.meet, "meet") / SPEED_OF_LIGHT
 
     @property
     def is_air(self) -> bool:

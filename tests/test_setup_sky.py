@@ -1,0 +1,164 @@
+"""Array, targets and night in setup files: read, written, refused with file and key path."""
+
+from dataclasses import replace
+
+import astropy.units as u
+import numpy as np
+import pytest
+
+from whitefringe import sky
+from whitefringe.demo_array import ARRAY_TEXT
+from whitefringe.errors import InputError, SetupError
+from whitefringe.setup import Setup
+
+
+@pytest.fixture(scope="module")
+def setup(larkmoor):
+    return Setup.read(larkmoor / "array.toml")
+
+
+def changed(folder, old, new):
+    assert old in ARRAY_TEXT
+    path = folder / "array.toml"
+    path.write_text(ARRAY_TEXT.replace(old, new), encoding="utf-8")
+    return Setup.read(path)
+
+
+def test_array_targets_and_night(setup):
+    night = setup.observation
+    assert night.array.names == ("Kiln", "Weir", "Tarn")
+    assert [target.name for target in night.targets] == ["Ember", "Sable", "Rush", "Fen"]
+    assert isinstance(night.objects["Ember"], sky.DarkenedDisc)
+    assert isinstance(night.objects["Sable"], sky.Binary)
+    assert [line.passes for line in night.delay_lines] == [4, 4, 4]
+    assert night.delay_lines[1].offset == 0.35 * u.m
+    assert (night.date, night.target, night.baseline) == ("2026-12-01", "Ember", "Kiln-Weir")
+    ember = night.chosen_target.coordinates
+    assert ember.distance.to_value(u.pc) == pytest.approx(1000 / 42)
+    assert ember.pm_dec.to_value(u.mas / u.yr) == pytest.approx(-110)
+
+
+def test_other_kinds_of_station_and_target(tmp_path):
+    here = sky.Station.geocentric(name="Weir", x=5_000_000 * u.m, y=-1_300_000 * u.m, z=3_600_000 * u.m)
+    text = 'east = "80 m"\nnorth = "60 m"\nup = "0.5 m"'
+    setup = changed(tmp_path, text, 'x = "5000 km"\ny = "-1300 km"\nz = "3600 km"')
+    assert np.allclose(setup.observation.array.enu_si[1], here.enu_si(setup.observation.array.location))
+    extra = '[[target]]\nname = "beacon"\nazimuth = "10 deg"\naltitude = "35 deg"\n\n[[target]]\nname = "lamp"\nlamp = true\n\n[night]'
+    targets = changed(tmp_path, "[night]", extra).observation.targets
+    assert isinstance(targets[-2], sky.FixedDirection)
+    assert isinstance(targets[-1], sky.LampTarget)
+
+
+def test_a_delay_line_in_air(tmp_path):
+    text = 'passes = 4, offset = "0.35 m"'
+    line = changed(tmp_path, text, text + ', medium = "air", wavelength = "1.65 um"').observation.delay_lines[1]
+    assert line.path_per_metre == pytest.approx(4 * 1.00024, abs=1e-4)
+
+
+def test_written_array_reads_back(tmp_path, setup):
+    more = (*setup.observation.targets, sky.FixedDirection(name="beacon", azimuth=10 * u.deg, altitude=35 * u.deg), sky.LampTarget())
+    blend = sky.WithBackground(object=sky.Group(objects=[sky.Point(), sky.GaussianDisc(fwhm=2 * u.mas)], east=[0, 3] * u.mas), fraction=0.1)
+    full = replace(setup, observation=replace(setup.observation, targets=more, objects={**setup.observation.objects, "Fen": blend}))
+    first, second = tmp_path / "a.toml", tmp_path / "b.toml"
+    full.write(first)
+    again = Setup.read(first)
+    again.write(second)
+    assert first.read_text(encoding="utf-8") == second.read_text(encoding="utf-8")
+    assert np.array_equal(again.observation.array.enu_si, full.observation.array.enu_si)
+    spacing = [60, 20] * u.m
+    for name, thing in full.observation.objects.items():
+        assert np.allclose(again.observation.objects[name].visibility(*spacing, 1.65 * u.um), thing.visibility(*spacing, 1.65 * u.um))
+    old, new = (night.rows["opd"].to_value(u.m) for night in (full.observation, again.observation))
+    assert np.max(np.abs(old - new)) < 1e-9
+
+
+def test_a_picture_is_not_written(tmp_path, setup):
+    picture = sky.Picture(image=np.ones((3, 3)), pixel=1 * u.mas)
+    with pytest.raises(SetupError, match="an object given as a picture is not written"):
+        replace(setup, observation=replace(setup.observation, objects={"Fen": picture})).write(tmp_path / "a.toml")
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "message"),
+    [
+        ('east = "80 m"', 'east = "80 deg"', r"array.station\[1\]: .*east .*m"),
+        ('up = "0.5 m"\n', "", r"array.station\[1\]: a station has east, north and up, or x, y and z; got east, north"),
+        ('name = "Weir"', 'name = "Kiln"', "array: station names must differ; twice or more: Kiln"),
+        ('latitude = "35 deg"', 'latitude = "95 deg"', "array.latitude: must lie between -90 and 90 deg; got 95.0 deg"),
+        ('height = "1000 m"', 'height = "1000 s"', "array.height: must be in a unit such as m; got 1000.0 s"),
+        ('dec = "25 deg"', 'dec = "125 deg"', r"target\[0\]: dec of star 'Ember' must lie between -90 and 90 deg"),
+        ('dec = "25 deg"\n', "", r"target\[0\]: a target has ra and dec .*or azimuth and altitude, or lamp = true; got ra, pm_ra_cosdec"),
+        ('epoch = "J2016.0"', 'epoch = "long ago"', r'target\[0\].epoch: must be a time such as "J2016.0"'),
+        ('name = "Sable"', 'name = "Ember"', "target: target names must differ; twice or more: Ember"),
+        ('shape = "binary"', 'shape = "star"', r"target\[1\].object.shape: must be one of point, uniform-disc, .*; got 'star'"),
+        ('separation = "6 mas"', "separation = 6", r"target\[1\].object.separation: must be text with a unit"),
+        ("passes = 4, offset", "passes = 3, offset", r"array.station\[1\].line: .*passes .*2 .*4"),
+        (
+            "passes = 4, offset",
+            'medium = "water", passes = 4, offset',
+            r'array.station\[1\].line.medium: must be "vacuum" or "air"; got \'water\'',
+        ),
+        ('stroke = "12 m"', 'length = "12 m"', r"array.station\[2\].line\.(stroke: this key is missing|length: unknown key)"),
+        ('date = "2026-12-01"', "day = 1", r"night\.(date: this key is missing|day: unknown key)"),
+    ],
+)
+def test_faults_carry_file_and_key(tmp_path, old, new, message):
+    with pytest.raises(SetupError, match=message) as caught:
+        changed(tmp_path, old, new)
+    assert str(caught.value).startswith(str(tmp_path / "array.toml"))
+
+
+def test_a_night_needs_an_array_and_targets(tmp_path):
+    bench = ARRAY_TEXT.split("[array]")[0]
+    path = tmp_path / "a.toml"
+    path.write_text(bench + '[night]\ndate = "2026-12-01"\n', encoding="utf-8")
+    with pytest.raises(SetupError, match=r"night: this needs an \[array\] in the same file"):
+        Setup.read(path)
+    path.write_text(ARRAY_TEXT.split("[[target]]")[0], encoding="utf-8")
+    with pytest.raises(SetupError, match=r"target: an array needs at least one \[\[target\]\]"):
+        Setup.read(path)
+
+
+def test_air_for_a_delay_line_must_be_there(tmp_path):
+    path = tmp_path / "a.toml"
+    start, rest = ARRAY_TEXT.split("[air]")
+    path.write_text(
+        start + "[array]" + rest.split("[array]", 1)[1].replace("passes = 4, offset", 'medium = "air", passes = 4, offset'),
+        encoding="utf-8",
+    )
+    with pytest.raises(SetupError, match=r"line.medium: there is no \[air\] in this file"):
+        Setup.read(path)
+
+
+def test_another_choice_keeps_the_tables(setup):
+    night = setup.observation
+    table = night.table
+    other = night.choosing(target="Rush", baseline="Weir-Tarn")
+    assert other.table is table
+    assert set(other.rows["target"]) == {"Rush"}
+    assert set(other.rows["baseline"]) == {"Weir-Tarn"}
+    assert len(other.rows) == len(night.times)
+    assert other.chosen_baseline.name == "Weir-Tarn"
+    assert isinstance(other.chosen_object, sky.UniformDisc)
+    assert isinstance(night.choosing(target="Fen").chosen_object, sky.Point)
+
+
+@pytest.mark.parametrize(
+    ("changes", "message"),
+    [
+        ({"target": "Moon"}, "there is no target 'Moon'; there are Ember, Sable, Rush, Fen"),
+        ({"baseline": "Kiln-Mill"}, "there is no baseline 'Kiln-Mill'; there are Kiln-Weir, Kiln-Tarn, Weir-Tarn"),
+        ({"targets": ()}, "targets must be one or more of Star, FixedDirection, LampTarget"),
+        ({"targets": ("Ember",)}, "targets must be one or more of Star, FixedDirection, LampTarget"),
+        ({"objects": {"Moon": sky.Point()}}, "there is no target 'Moon' for this object"),
+    ],
+)
+def test_messages_of_an_observation(setup, changes, message):
+    with pytest.raises(InputError, match=message):
+        replace(setup.observation, **changes)
+
+
+def test_without_delay_lines_there_are_no_windows(setup):
+    bare = replace(setup.observation, delay_lines=(), targets=setup.observation.targets[:1], objects={})
+    assert bare.windows is None
+    assert "carriage_1" not in bare.table.colnames
