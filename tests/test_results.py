@@ -79,7 +79,7 @@ def test_an_unknown_citation_is_refused():
 @pytest.mark.parametrize("key", CITATIONS)
 def test_every_citation_can_be_looked_up(key):
     source = CITATIONS[key]
-    assert source.locator.startswith(("doi:10.", "ISBN "))
+    assert source.locator.startswith(("doi:10.", "ISBN ", "bibcode:", "report "))
     assert cite(key) == f"{source.short}; {source.locator}"
     assert Measured(value=np.float64(1.0), citation=key).citation == key
 

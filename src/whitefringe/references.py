@@ -58,11 +58,11 @@ CITATIONS: dict[str, Citation] = {
     "birch-downs": Citation("Birch & Downs, Metrologia 30, 155 (1993) and 31, 315 (1994)", "doi:10.1088/0026-1394/31/4/006"),
     "stone-zimmerman": Citation(
         "Stone & Zimmerman, Index of refraction of air (NIST Engineering Metrology Toolbox), appendices A and B",
-        "emtoolbox.nist.gov/Wavelength/Documentation.asp",
+        "report emtoolbox.nist.gov/Wavelength/Documentation.asp",
     ),
     "mathar": Citation("Mathar, J. Opt. A 9, 470 (2007), tables 1 to 5", "doi:10.1088/1464-4258/9/5/008"),
     "malitson": Citation("Malitson, JOSA 55, 1205 (1965), the three-term dispersion formula of glasses", "doi:10.1364/JOSA.55.001205"),
-    "schott-tie-19": Citation("Schott, Technical Information TIE-19, temperature coefficient of the refractive index", "TIE-19"),
+    "schott-tie-19": Citation("Schott, Technical Information TIE-19, temperature coefficient of the refractive index", "report TIE-19"),
     "saleh-teich": Citation("Saleh & Teich, Fundamentals of Photonics, 2nd ed. (Wiley 2007), ch. 5 and 22", "ISBN 978-0-471-35832-9"),
     "hanbury-brown": Citation("Hanbury Brown, Davis, Lake & Thompson, MNRAS 167, 475 (1974)", "doi:10.1093/mnras/167.3.475"),
     "hestroffer": Citation("Hestroffer, A&A 327, 199 (1997), power-law limb darkening", "bibcode:1997A&A...327..199H"),
@@ -71,7 +71,7 @@ CITATIONS: dict[str, Citation] = {
         "doi:10.1007/978-3-319-44431-4",
     ),
     "iers-2010": Citation("Petit & Luzum (eds), IERS Conventions (2010), IERS Technical Note 36", "ISBN 3-89888-989-6"),
-    "iers-bulletin-a": Citation("IERS Bulletin A, accuracy of the predictions, and the file finals2000A it goes with", "IERS, weekly"),
+    "iers-bulletin-a": Citation("IERS Bulletin A, accuracy of the predictions, and the file finals2000A it goes with", "report IERS Bulletin A, weekly"),
     "oifits": Citation("Duvert, Young & Hummel, A&A 597, A8 (2017), OIFITS version 2", "doi:10.1051/0004-6361/201526405"),
 }
 """Key -> citation. Edition and section numbers of the books are from memory, the DOIs of the papers too."""

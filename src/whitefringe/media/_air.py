@@ -95,7 +95,7 @@ class Air(Medium):
         return replace(self, **{key: value for key, value in given.items() if value is not None})
 
     def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
-        """N - 1 and the derivatives of n with wavenumber [1/m], shape (4, ...)."""
+        """Refractivity n - 1 and the derivatives of n with wavenumber [1/m], shape (4, ...)."""
         return self.refractivity_at_si(wavenumber, self.state_si)
 
     def refractivity_at_si(self, wavenumber: FloatArray, state: State) -> FloatArray:
@@ -115,6 +115,11 @@ class Air(Medium):
         """Return the state of air warmer [K], denser [Pa] or moister [fraction of saturation]; warmer air keeps its relative humidity."""
         warm = self.temperature_si + temperature
         return State(warm, self.pressure_si + pressure, (self.relative_humidity + humidity) * self.saturated_si(warm))
+
+    @property
+    def co2_si(self) -> float:
+        """Mole fraction of carbon dioxide that the model is for."""
+        return 450e-6
 
     @cached_property
     def temperature_si(self) -> float:

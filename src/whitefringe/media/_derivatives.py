@@ -34,7 +34,7 @@ def polynomial(s: FloatArray, coefficients: Sequence[float] | FloatArray) -> Flo
 
 
 def root_of_one_plus(square: FloatArray) -> FloatArray:
-    """N - 1 and the derivatives of n from those of n^2 - 1, without losing digits where n is close to 1."""
+    """Refractivity n - 1 and the derivatives of n from those of n^2 - 1, without losing digits where n is close to 1."""
     n = np.sqrt(1 + square[0])
     first = square[1] / (2 * n)
     second = (square[2] - 2 * first**2) / (2 * n)

@@ -68,11 +68,16 @@ class Ciddor1996(Air):
         co2_fraction(self.co2)
         super().__post_init__()
 
+    @property
+    def co2_si(self) -> float:
+        """Mole fraction of carbon dioxide."""
+        return co2_fraction(self.co2)
+
     def refractivity_at_si(self, wavenumber: FloatArray, state: State) -> FloatArray:
-        """N - 1 and the derivatives of n, shape (4, ...)."""
+        """Refractivity n - 1 and the derivatives of n, shape (4, ...)."""
         s = np.asarray(wavenumber, dtype=float) * PER_MICROMETRE
         dry, wet = _densities(state)
-        air = poles(s, *DISPERSION) * (1 + 0.534 * (co2_fraction(self.co2) - 450e-6))
+        air = poles(s, *DISPERSION) * (1 + 0.534 * (self.co2_si - 450e-6))
         vapour = 1.022e-8 * polynomial(s, _VAPOUR)
         return rescaled(dry * air + wet * vapour, PER_MICROMETRE)
 
@@ -126,7 +131,7 @@ class BirchDowns1994(Air):
     stated: ClassVar[tuple[Range, Range, Range]] = _STATED
 
     def refractivity_at_si(self, wavenumber: FloatArray, state: State) -> FloatArray:
-        """N - 1 and the derivatives of n, shape (4, ...)."""
+        """Refractivity n - 1 and the derivatives of n, shape (4, ...)."""
         s = np.asarray(wavenumber, dtype=float) * PER_MICROMETRE
         p, t = state.pressure, state.temperature - 273.15
         density = p * (1 + 1e-8 * (0.601 - 0.00972 * t) * p) / (1 + 0.0036610 * t) / 96095.43

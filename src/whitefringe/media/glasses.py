@@ -167,12 +167,13 @@ class Glass(Medium):
         return (f"{self.name} extrapolated: {words}",) if words else ()
 
     def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
-        """N - 1 and the derivatives of n with vacuum wavenumber [1/m], shape (4, ...)."""
+        """Refractivity n - 1 and the derivatives of n with vacuum wavenumber [1/m], shape (4, ...)."""
         sigma = np.asarray(wavenumber, dtype=float)
         s = sigma * PER_MICROMETRE
-        index = self._absolute(s) if self.relative_to == "air" else self._sellmeier(s)
+        relative, air = self._relative_and_air(s) if self.relative_to == "air" else (self._sellmeier(s), None)
+        index = relative if air is None else product(relative, air)
         if self._warmer and self.thermal is not None:
-            index = index + self.thermal.change(index, s, self._warmer)
+            index = index + self.thermal.change(relative, s, self._warmer)
         return rescaled(_less_one(index), PER_MICROMETRE)
 
     def _sellmeier(self, s: FloatArray) -> FloatArray:
@@ -182,10 +183,11 @@ class Glass(Medium):
         square = poles(s, b / c, 1 / c) + polynomial(s, [np.sum(self.strengths[~bound])])
         return _plus_one(root_of_one_plus(square))
 
-    def _absolute(self, s: FloatArray) -> FloatArray:
+    def _relative_and_air(self, s: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Index relative to air, at the wavelengths that the vacuum wavenumbers have in air, and index of that air."""
         air = _plus_one(rescaled(self._reference_air.refractivity_si(s / PER_MICROMETRE), 1 / PER_MICROMETRE))
         inside = times_wavenumber(air, s)
-        return product(composed(self._sellmeier(inside[0]), inside), air)
+        return composed(self._sellmeier(inside[0]), inside), air
 
     @cached_property
     def _reference_air(self) -> Ciddor1996:
@@ -203,7 +205,8 @@ def _less_one(index: FloatArray) -> FloatArray:
 @cache
 def packaged_glasses() -> tuple[Glass, ...]:
     """Return the packaged glasses, each with its source; N-BK7 with its temperature coefficients."""
-    return _glasses(read_packaged("glasses.ecsv"), "glasses.ecsv")
+    glasses = _glasses(read_packaged("glasses.ecsv"), "glasses.ecsv")
+    return tuple(replace(glass, thermal=packaged_coefficients(glass.name)) for glass in glasses)
 
 
 def read_glasses(path: str | Path) -> tuple[Glass, ...]:
@@ -247,15 +250,13 @@ def _glass(table: Table, row: Row) -> Glass:
     if alone:
         raise InputError(f"column b{alone[0]}: there is no column c{alone[0]} to go with it")
     unit = u.um if str(row["form"]) == "length" else u.um**2
-    name = str(row["name"])
     return Glass(
-        name=name,
+        name=str(row["name"]),
         strengths=[float(row[f"b{k}"]) for k in names],
         resonances=[float(row[f"c{k}"]) for k in names] * unit,
         low=float(row["low"]) * table["low"].unit,
         high=float(row["high"]) * table["high"].unit,
         temperature=float(row["temperature"]) * table["temperature"].unit,
         relative_to=str(row["relative_to"]),
-        thermal=packaged_coefficients(name),
         source=str(row["source"]),
     )

@@ -80,6 +80,11 @@ class Mathar2007(Air):
         Range(name="relative humidity", low=0.0, high=60.0, unit="%", source="fitted from 5 to 60 %; " + _ABSTRACT),
     )
 
+    @property
+    def co2_si(self) -> float:
+        """Mole fraction of carbon dioxide that the fits are for."""
+        return 370e-6
+
     def _condition_flags(self) -> tuple[str, ...]:
         dry = self.relative_humidity < 0.05
         words = f"{self.name} below the humidity it was fitted to: {100 * self.relative_humidity:.3g} % of 5 to 60 %"
@@ -98,7 +103,7 @@ class Mathar2007(Air):
         return (*self._condition_flags(), f"{self.name} extrapolated: {words}")
 
     def refractivity_at_si(self, wavenumber: FloatArray, state: State) -> FloatArray:
-        """N - 1 and the derivatives of n, shape (4, ...); beyond a window's ends, of the window that is nearest."""
+        """Refractivity n - 1 and the derivatives of n, shape (4, ...); beyond a window's ends, of the window that is nearest."""
         sigma = np.asarray(wavenumber, dtype=float)
         chosen, _ = _window_of(sigma)
         humidity = 100 * state.vapour / self.saturated_si(state.temperature)

@@ -49,7 +49,7 @@ class Medium:
     wavelengths: ClassVar[Range | None] = None
 
     def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
-        """N - 1 and the first three derivatives of n with vacuum wavenumber [1/m], shape (4, ...)."""
+        """Refractivity n - 1 and the first three derivatives of n with vacuum wavenumber [1/m], shape (4, ...)."""
         raise NotImplementedError
 
     def refractivity_shifted_si(self, wavenumber: FloatArray, **shift: float) -> FloatArray:

@@ -17,7 +17,8 @@ from .medium import Range
 class ThermalCoefficients:
     """Change of the absolute index by dT kelvin.
 
-    n(T0 + dT) - n(T0) = (n^2 - 1) / (2 n) [D0 dT + D1 dT^2 + D2 dT^3 + (E0 dT + E1 dT^2) / (L^2 - L0^2)], L the wavelength in um.
+    n(T0 + dT) - n(T0) = (n^2 - 1) / (2 n) [D0 dT + D1 dT^2 + D2 dT^3 + (E0 dT + E1 dT^2) / (L^2 - L0^2)], L the wavelength in um,
+    n within the factor that of the dispersion formula (relative to air where it is so stated).
 
     Parameters
     ----------
@@ -49,7 +50,7 @@ class ThermalCoefficients:
         return Range(name="temperature", low=self.low, high=self.high, unit="deg_C", source="thermal coefficients").outside(celsius)
 
     def change(self, index: FloatArray, s: FloatArray, dT: float) -> FloatArray:
-        """Change of n and of its derivatives with wavenumber `s` [1/um], shape (4, ...)."""
+        """Change of n and of its derivatives with wavenumber `s` [1/um], shape (4, ...), from the formula's own `index`."""
         n = index[0]
         strength = composed(np.array([(n - 1 / n) / 2, (1 + n**-2) / 2, -(n**-3), 3 * n**-4]), index)
         square = self.resonance**2

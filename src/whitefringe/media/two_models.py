@@ -84,11 +84,13 @@ class TwoModelAir(Medium):
         flags = [flag for air, side in ((self.short, ~long), (self.long, long)) if np.any(side) for flag in air.flags_si(sigma[side])]
         if np.any(long) and not np.all(long):
             what = "taken out" if self.levelled else "left in"
+            if abs(self.short.co2_si - self.long.co2_si) > 1e-7:
+                what += f", part of it from {1e6 * self.short.co2_si:.4g} against {1e6 * self.long.co2_si:.4g} ppm of CO2"
             flags.append(f"{self.short.name} and {self.long.name} meet at {self.meet} with a step in n of {self.step:.2e}, {what}")
         return tuple(flags)
 
     def refractivity_si(self, wavenumber: FloatArray) -> FloatArray:
-        """N - 1 and the derivatives of n, shape (4, ...); those of the side on which a wavenumber lies."""
+        """Refractivity n - 1 and the derivatives of n, shape (4, ...); those of the side on which a wavenumber lies."""
         return self.refractivity_shifted_si(wavenumber)
 
     def refractivity_shifted_si(self, wavenumber: FloatArray, **shift: float) -> FloatArray:
