@@ -21,9 +21,15 @@ def test_the_script_runs_and_says_inside():
     assert len(lines) <= 11
 
 
+def test_the_script_of_the_arms_and_the_sky_runs():
+    done = subprocess.run([sys.executable, "-W", "error", "-c", SCRIPTS[1]], cwd=ROOT, capture_output=True, text=True, check=False)
+    assert done.stderr == ""
+    assert "UT1" in done.stdout
+
+
 def test_the_dashboard_runs(monkeypatch):
     monkeypatch.chdir(ROOT / "notebooks" / "larkmoor")
-    exec(SCRIPTS[1], {})
+    exec(SCRIPTS[2], {})
 
 
 def test_the_files_that_are_named_exist():
@@ -31,6 +37,6 @@ def test_the_files_that_are_named_exist():
         assert (ROOT / name).exists(), name
 
 
-@pytest.mark.parametrize("word", ["measure", "predict", "demo"])
+@pytest.mark.parametrize("word", ["measure", "predict", "light", "track", "demo"])
 def test_the_commands_exist(word):
     subprocess.run([sys.executable, "-m", "whitefringe", word, "--help"], check=True, capture_output=True)

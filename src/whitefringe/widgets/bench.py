@@ -18,17 +18,20 @@ import numpy as np
 
 from ..coherence import coherence_length, packet_width, self_coherence
 from ..errors import InputError, UndefinedWidthError
+from ..media import BandOffset, DispersedPacket, Glass, band_offset, packaged_glasses
 from ..results import Measured
 from ..scans import Scan, ScanResult, compared, reduce_scan
 from ..setup import Setup
 from ..spectra import Spectrum, mean_wavelength
+from ._sky_code import observation_code
 
 
 @dataclass(frozen=True, kw_only=True)
 class BenchResults:
     """Everything that is shown, computed once per change.
 
-    `gamma` is the complex degree of coherence at the delay cursor; `width` or `length` is None where this light has none.
+    `gamma` is the complex degree of coherence at the delay cursor; `width` or `length` is None where this light has none. `packet` is
+    there where the setup has arms, `offset` (of the science band from the tracking band) where it has a tracking band too.
     """
 
     light: Spectrum
@@ -37,6 +40,11 @@ class BenchResults:
     length: Measured | None
     gamma: complex
     reduction: ScanResult | None
+    packet: DispersedPacket | None = None
+    offset: BandOffset | None = None
+
+
+NO_ARMS = "This setup has no arms: give Setup(arms=media.ArmPair(...)), or [[first_arm]] and [[second_arm]] entries in the setup file."
 
 
 def plotted_half_range(results: BenchResults) -> float:
@@ -89,7 +97,7 @@ class Bench:
             setup = replace(self.setup, **changes)
             if "definition" in changes and self.scan is not None:
                 self._reduced = reduce_scan(self.scan, definition=setup.definition)
-            results = self._evaluate(setup, self.results if set(changes) == {"delay"} else None)
+            results = self._evaluate(setup, self.results)
             self.setup, self.results, self.problem = setup, results, ""
             self._tell()
 
@@ -114,13 +122,21 @@ class Bench:
             listener()
 
     def _evaluate(self, setup: Setup, known: BenchResults | None) -> BenchResults:
-        light = known.light if known else setup.light
+        """Compute what is shown; what does not depend on what has changed is taken from `known`."""
+
+        def same(*names: str) -> bool:
+            return known is not None and all(getattr(setup, name) is getattr(self.setup, name) for name in names)
+
+        if setup.observation is not None:
+            _ = setup.observation.table
+        light = known.light if known is not None and same("source", "filters") else setup.light
         gamma = complex(self_coherence(light, setup.delay))
-        if known:
+        if known is not None and same(*(name for name in Setup.__dataclass_fields__ if name not in ("delay", "observation"))):
             return replace(known, gamma=gamma)
         reduction = self._reduced
         if reduction is not None:
             reduction = compared(reduction, light, setup.tolerances, setup.expected_contrast)
+        packet, offset = self._through_arms(setup, light)
         return BenchResults(
             light=light,
             wavelength=mean_wavelength(light),
@@ -128,7 +144,17 @@ class Bench:
             length=_or_none(lambda spectrum: coherence_length(spectrum, setup.definition), light),
             gamma=gamma,
             reduction=reduction,
+            packet=packet,
+            offset=offset,
         )
+
+    @staticmethod
+    def _through_arms(setup: Setup, light: Spectrum) -> tuple[DispersedPacket | None, BandOffset | None]:
+        if setup.arms is None:
+            return None, None
+        packet = DispersedPacket(pair=setup.arms, light=light)
+        tracking = setup.tracking_light
+        return packet, None if tracking is None else band_offset(setup.arms, tracking, light)
 
     def summary(self) -> str:
         """Return the state in one line, at fixed precision: stable text for notebooks under test."""
@@ -138,7 +164,7 @@ class Bench:
         text = (
             f"wavelength {results.wavelength.to_value(u.um):.4f} um, packet width {width}, "
             f"delay {self.setup.delay.to_value(u.um):.2f} um, contrast there {abs(results.gamma):.4f}, verdict {verdict}"
-        )
+        ) + _behind_arms(results)
         return f"{text}, problem: {self.problem}" if self.problem else text
 
     def as_code(self) -> str:
@@ -146,11 +172,13 @@ class Bench:
         filters = ", ".join(_code(item) for item in self.setup.filters)
         lines = [
             "import astropy.units as u",
-            "from whitefringe import coherence, scans, spectra",
+            f"from whitefringe import coherence, {'media, ' if self.setup.arms is not None else ''}scans, spectra",
             f"light = spectra.detected({_code(self.setup.source)}{', ' if filters else ''}{filters})",
             f"gamma = coherence.self_coherence(light, {self.setup.delay.to_value(u.um):g} * u.um)",
             f"length = coherence.coherence_length(light, {self.setup.definition!r})",
         ]
+        if self.setup.arms is not None:
+            lines += _arms_code(self.setup)
         if self.scan is not None:
             lines += [
                 f"scan = scans.read_scan({self.scan.provenance.get('path', 'scan.ecsv')!r}, {_code(self.setup.layout)})",
@@ -158,7 +186,7 @@ class Bench:
                 f"expected_contrast={self.setup.expected_contrast:g}, "
                 f"tolerances={_code(self.setup.tolerances)})",
             ]
-        return "\n".join(lines)
+        return "\n".join(lines + observation_code(self.setup.observation))
 
 
 def _or_none(measure: Callable[[Spectrum], Measured], light: Spectrum) -> Measured | None:
@@ -168,12 +196,33 @@ def _or_none(measure: Callable[[Spectrum], Measured], light: Spectrum) -> Measur
         return None
 
 
+def _behind_arms(results: BenchResults) -> str:
+    """Clause of the summary: contrast and place behind the arms, offset of the bands; nothing without arms."""
+    if results.packet is None:
+        return ""
+    try:
+        text = f", dispersed contrast {results.packet.peak_contrast.value:.4f} at {results.packet.position.to_value(u.um):.2f} um"
+    except UndefinedWidthError:
+        text = ", no dispersed packet"
+    return text if results.offset is None else f"{text}, offset from tracking {results.offset.offset.to_value(u.um):.2f} um"
+
+
+def _arms_code(setup: Setup) -> list[str]:
+    lines = [f"arms = {_code(setup.arms)}", "packet = media.DispersedPacket(pair=arms, light=light)"]
+    if not setup.tracking:
+        return lines
+    filters = ", ".join(_code(item) for item in setup.tracking)
+    return [*lines, f"tracking = spectra.detected({_code(setup.source)}, {filters})", "offset = media.band_offset(arms, tracking, light)"]
+
+
 def _code(shape: Any) -> str:
     """Write a frozen object as the call that makes it; fields that stand at their default are left out."""
     name = type(shape).__name__
     if name == "Lines":
         return f"spectra.Lines([{', '.join(_code(line) for line in shape.lines)}])"
-    area = "scans" if type(shape).__module__.startswith("whitefringe.scans") else "spectra"
+    if isinstance(shape, Glass) and any(shape is glass for glass in packaged_glasses()):
+        return f"media.Glass.named({shape.name!r})"
+    area = type(shape).__module__.split(".")[1]
     parts = []
     for item in shape.__dataclass_fields__.values():
         value = getattr(shape, item.name)
@@ -191,6 +240,8 @@ def _value_code(value: Any) -> str:
         return f"u.Quantity({value.value.tolist()!r}, {str(value.unit)!r})"
     if isinstance(value, u.Quantity):
         return f'u.Quantity("{value.value:.12g} {value.unit}")'
+    if isinstance(value, np.ndarray):
+        return repr(value.tolist())
     if isinstance(value, tuple):
-        return f"({', '.join(_value_code(item) for item in value)},)"
+        return f"({''.join(f'{_value_code(item)}, ' for item in value).rstrip(' ')})"
     return _code(value) if hasattr(value, "__dataclass_fields__") else repr(value)
