@@ -71,7 +71,9 @@ CITATIONS: dict[str, Citation] = {
         "doi:10.1007/978-3-319-44431-4",
     ),
     "iers-2010": Citation("Petit & Luzum (eds), IERS Conventions (2010), IERS Technical Note 36", "ISBN 3-89888-989-6"),
-    "iers-bulletin-a": Citation("IERS Bulletin A, accuracy of the predictions, and the file finals2000A it goes with", "report IERS Bulletin A, weekly"),
+    "iers-bulletin-a": Citation(
+        "IERS Bulletin A, accuracy of the predictions, and the file finals2000A it goes with", "report IERS Bulletin A, weekly"
+    ),
     "oifits": Citation("Duvert, Young & Hummel, A&A 597, A8 (2017), OIFITS version 2", "doi:10.1051/0004-6361/201526405"),
 }
 """Key -> citation. Edition and section numbers of the books are from memory, the DOIs of the papers too."""

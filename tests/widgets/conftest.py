@@ -1,14 +1,19 @@
-"""A bench with Larkmoor's setup and scan, and a count of living widgets."""
+"""Benches with Larkmoor's setups, scan and night, and a count of living widgets."""
 
 from collections.abc import Iterator
+from dataclasses import replace
 from pathlib import Path
 
+import astropy.units as u
 import ipywidgets
 import pytest
 
+from whitefringe import sky
 from whitefringe.scans import Scan, read_scan
 from whitefringe.setup import Setup
-from whitefringe.widgets import Bench, BenchPanel
+from whitefringe.widgets import Bench, BenchPanel, NightPanel
+
+BULLETIN = sky.EarthOrientation.fixed(ut1_utc=-0.092 * u.s, uncertainty=4 * u.ms)
 
 
 def living_widgets() -> int:
@@ -33,4 +38,23 @@ def bench(setup: Setup, scan: Scan) -> Bench:
 @pytest.fixture
 def panel(bench: Bench) -> Iterator[BenchPanel]:
     with BenchPanel(bench) as made:
+        yield made
+
+
+@pytest.fixture(scope="session")
+def array_setup(larkmoor: Path) -> Setup:
+    setup = Setup.read(larkmoor / "array.toml")
+    night = replace(setup.observation, orientation=BULLETIN, step=10 * u.min)
+    _ = night.table, night.windows
+    return replace(setup, observation=night)
+
+
+@pytest.fixture
+def night_bench(array_setup: Setup) -> Bench:
+    return Bench(array_setup)
+
+
+@pytest.fixture
+def night_panel(night_bench: Bench) -> Iterator[NightPanel]:
+    with NightPanel(night_bench) as made:
         yield made

@@ -14,11 +14,11 @@ from scipy.optimize import minimize_scalar
 from ..errors import InputError
 from ..results import Measured
 from ..spectra import Spectrum
-from ..units import SPEED_OF_LIGHT
+from ..units import SPEED_OF_LIGHT, FloatArray
 from ._derivatives import times_wavenumber
 from .arms import ArmPair, Segment
 from .glasses import Glass
-from .packets import DispersedPacket, centre_si
+from .packets import DispersedPacket, centre_si, coarser
 from .uncertainty import AirUncertainty, total, uncertainties
 
 AIMS = {
@@ -32,9 +32,6 @@ THICKEST = 0.2
 
 SCANNED = 81
 """Thicknesses tried about the first guess, so that the best of several optima is found."""
-
-CELLS = 1024
-"""Cells to which lights are thinned for the search; only the last refinement takes them whole."""
 
 NEAR = 20e-6
 """Reach [m] of the last refinement."""
@@ -138,7 +135,7 @@ def compensator(
     flags = with_plate(pair, glass, 1e-3).flags(*lights)
     coarse = tuple(coarser(light) for light in lights)
     near = _solve(pair, glass, coarse, minimise)
-    best = near if minimise == "group delay spread" else _refined(partial(_loss, pair, glass, lights, minimise), near, NEAR)
+    best = near if minimise == "group delay spread" else _refined(partial(_loss, _Search(pair, glass), lights, minimise), near, NEAR)
     parts = uncertainties(partial(_shifted, glass=glass, lights=coarse, aim=minimise, near=near), pair, air or AirUncertainty())
     sigma = total(parts)
     thickness = Measured(
@@ -149,17 +146,6 @@ def compensator(
     )
     shares = {name: (part * u.m).to(u.um) for name, part in parts.items()}
     return Compensation(thickness=thickness, aim=minimise, parts=shares, flags=flags, **_remaining(pair, glass, lights, minimise, best))
-
-
-def coarser(light: Spectrum) -> Spectrum:
-    """Return the light in at most twice `CELLS` cells, each the mean of some."""
-    group = light.density.size // CELLS
-    if group < 2:
-        return light
-    count = light.density.size // group * group
-    if count < light.density.size:
-        return light
-    return replace(light, step=light.step * group, density=light.density.reshape(-1, group).mean(axis=1))
 
 
 def with_plate(pair: ArmPair, glass: Glass, thickness: float) -> ArmPair:
@@ -193,7 +179,7 @@ def _solve(pair: ArmPair, glass: Glass, lights: tuple[Spectrum, ...], aim: str) 
     if aim == "group delay spread":
         return _checked(_equal_delays(pair, glass, lights), glass)
     guess = _checked(_least_dispersion(pair, glass, lights), glass)
-    loss = partial(_loss, pair, glass, lights, aim)
+    loss = partial(_loss, _Search(pair, glass), lights, aim)
     reach = max(0.1 * abs(guess), _tolerable(glass, lights))
     places = np.linspace(guess - reach, guess + reach, SCANNED)
     best = float(places[int(np.argmin([loss(place) for place in places]))])
@@ -219,7 +205,7 @@ def _shifted(pair: ArmPair, shift: dict[str, Any], *, glass: Glass, lights: tupl
     moved = _Shifted(first=pair.first, second=pair.second, shift=tuple(shift.items()))
     if aim == "group delay spread":
         return _equal_delays(moved, glass, lights)
-    return _refined(partial(_loss, moved, glass, lights, aim), near, 0.02 * _tolerable(glass, lights) + 1e-6)
+    return _refined(partial(_loss, _Search(moved, glass), lights, aim), near, 0.02 * _tolerable(glass, lights) + 1e-6)
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -232,6 +218,40 @@ class _Shifted(ArmPair):
         """As of a pair, in the shifted air."""
         given: dict[str, Any] = dict(self.shift) | shift
         return super().refraction_shifted_si(wavenumber, **{"only": only, **given})
+
+
+class _Search:
+    """Arms with a plate whose thickness is tried: what arms and a metre of glass do at a wavenumber is computed once."""
+
+    def __init__(self, pair: ArmPair, glass: Glass) -> None:
+        self.pair, self.glass = pair, glass
+        self._known: dict[bytes, tuple[FloatArray, FloatArray]] = {}
+
+    def refraction_si(self, wavenumber: FloatArray, thickness: float) -> FloatArray:
+        """Of the arms with the plate: linear in its thickness."""
+        key = wavenumber.tobytes()
+        if key not in self._known:
+            plate = times_wavenumber(self.glass.refractivity_si(wavenumber), wavenumber)
+            self._known[key] = (self.pair.refraction_si(wavenumber), plate)
+        arms, plate = self._known[key]
+        return arms + thickness * plate
+
+    def with_thickness(self, thickness: float) -> _Tried:
+        """Return the pair with that much glass."""
+        plated = with_plate(self.pair, self.glass, thickness)
+        return _Tried(first=plated.first, second=plated.second, search=self, thickness=thickness)
+
+
+@dataclass(frozen=True, kw_only=True)
+class _Tried(ArmPair):
+    """A pair whose plate is being tried."""
+
+    search: _Search
+    thickness: float
+
+    def refraction_shifted_si(self, wavenumber: Any, only: int | None = None, **shift: float) -> Any:
+        """As of a pair, from what the search knows."""
+        return self.search.refraction_si(np.asarray(wavenumber, dtype=float), self.thickness)
 
 
 def _equal_delays(pair: ArmPair, glass: Glass, lights: tuple[Spectrum, ...]) -> float:
@@ -270,8 +290,8 @@ def _tolerable(glass: Glass, lights: tuple[Spectrum, ...]) -> float:
     return float(np.min(6.0 / (np.pi * np.abs(plate) * variance)))
 
 
-def _loss(pair: ArmPair, glass: Glass, lights: tuple[Spectrum, ...], aim: str, thickness: float) -> float:
-    packets = [DispersedPacket(pair=with_plate(pair, glass, thickness), light=light) for light in lights]
+def _loss(search: _Search, lights: tuple[Spectrum, ...], aim: str, thickness: float) -> float:
+    packets = [DispersedPacket(pair=search.with_thickness(thickness), light=light) for light in lights]
     if aim == "loss at one delay":
         return _one_delay(packets)[1]
     return float(-sum(np.log(packet.peak_contrast.value.value) for packet in packets))

@@ -10,7 +10,7 @@ from ..errors import InputError
 from ..results import Measured
 from ..spectra import Spectrum
 from .arms import ArmPair
-from .packets import DispersedPacket, centre_si
+from .packets import DispersedPacket, centre_si, coarser
 from .uncertainty import AirUncertainty, Function, by_air, total, uncertainties
 
 DEFINITIONS = {
@@ -95,11 +95,13 @@ def band_offset(
         raise InputError(f"by must be one of {', '.join(DEFINITIONS)}; got {by!r}")
     flags = pair.flags(light_a, light_b)
 
+    coarse_a, coarse_b = coarser(light_a), coarser(light_b)
+
     def offset(arms: ArmPair, shift: dict[str, float]) -> float:
-        return centre_si(arms, light_b, **shift) - centre_si(arms, light_a, **shift)
+        return centre_si(arms, coarse_b, **shift) - centre_si(arms, coarse_a, **shift)
 
     if by == "group delay":
-        value = offset(pair, {})
+        value = centre_si(pair, light_b) - centre_si(pair, light_a)
     else:
         value = DispersedPacket(pair=pair, light=light_b).peak_si - DispersedPacket(pair=pair, light=light_a).peak_si
     parts = uncertainties(offset, pair, air or AirUncertainty())

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import Any
 
@@ -24,6 +24,9 @@ PER_WIDTH = 16
 
 FINER = 33
 """Path differences of each finer search; more than 24, so that they go through a chirp-z transform."""
+
+CELLS = 1024
+"""Cells to which lights are thinned where only a derivative or a first guess is wanted."""
 
 MOST = 60_000
 """Path differences of a search at most."""
@@ -254,3 +257,14 @@ def _weights(light: Spectrum) -> tuple[FloatArray, FloatArray]:
     places = [(line.frequency_si / SPEED_OF_LIGHT, line.strength**2) for line in light.lines]
     sigma, weight = np.array(places).T
     return sigma, weight
+
+
+def coarser(light: Spectrum) -> Spectrum:
+    """Return the light in at most twice `CELLS` cells, each the mean of some."""
+    group = light.density.size // CELLS
+    if group < 2:
+        return light
+    count = light.density.size // group * group
+    if count < light.density.size:
+        return light
+    return replace(light, step=light.step * group, density=light.density.reshape(-1, group).mean(axis=1))

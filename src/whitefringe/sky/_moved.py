@@ -7,7 +7,7 @@ from typing import Any
 
 import astropy.units as u
 import numpy as np
-from astropy.coordinates import SkyCoord
+from astropy.coordinates import SkyCoord, SphericalCosLatDifferential, SphericalRepresentation
 
 from ..errors import InputError
 from ..units import FloatArray, as_si, positive_si
@@ -23,12 +23,14 @@ def moved_star(star: Any, ra: Any = None, dec: Any = None) -> Star:
     if not isinstance(star, Star):
         raise InputError(f"only a star can be moved; {star.name!r} is a {type(star).__name__}: choose a star as the target")
     data = star.coordinates.data
-    longitude = data.lon.to_value(u.rad) if ra is None else _one(ra, "ra")
-    latitude = data.lat.to_value(u.rad) if dec is None else _one(dec, "dec")
-    if abs(latitude) > np.pi / 2 * (1 + 1e-12):
+    if not hasattr(data, "lon"):
+        data = data.represent_as(SphericalRepresentation, SphericalCosLatDifferential if star.moves else None)
+    longitude = data.lon if ra is None else _one(ra, "ra")
+    latitude = data.lat if dec is None else _one(dec, "dec")
+    if abs(latitude.to_value(u.deg)) > 90:
         raise InputError(f"dec of star {star.name!r} must lie between -90 and 90 deg; got {dec}: give one in that range")
     far = (data.distance,) if star.near else ()
-    place = type(data)(longitude * u.rad, min(max(latitude, -np.pi / 2), np.pi / 2) * u.rad, *far, differentials=data.differentials)
+    place = type(data)(longitude, latitude, *far, differentials=data.differentials)
     return replace(star, coordinates=SkyCoord(star.coordinates.frame.realize_frame(place), obstime=star.coordinates.obstime))
 
 
@@ -40,7 +42,7 @@ def moved_station(array: Array, baseline: Baseline, length: Any = None, azimuth:
         if over_ground > MOST_LENGTH:
             raise InputError(f"length must be at most {MOST_LENGTH / 1000:g} km, as far as the ground is flat enough; got {length}")
     if azimuth is not None:
-        direction = _one(azimuth, "azimuth")
+        direction = float(_one(azimuth, "azimuth").to_value(u.rad))
     east, north, _ = baseline.enu_si
     shift = np.array([over_ground * np.sin(direction) - east, over_ground * np.cos(direction) - north, 0.0])
     stations = [_shifted(item, array, shift) if item.name == baseline.second else item for item in array.stations]
@@ -64,8 +66,9 @@ def _shifted(station: Any, array: Array, shift: FloatArray) -> Any:
     return replace(station, **moved)
 
 
-def _one(value: Any, name: str) -> float:
+def _one(value: Any, name: str) -> u.Quantity:
+    """Refuse what is not one angle; the unit is kept, and with it the digits."""
     angle = as_si(value, u.rad, name, "deg")
     if np.ndim(angle) != 0:
         raise InputError(f"{name} must be one angle; got an array of shape {np.shape(angle)}")
-    return float(angle)
+    return u.Quantity(value)

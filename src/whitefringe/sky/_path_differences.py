@@ -15,6 +15,7 @@ from astropy.time import Time
 from ..units import FloatArray
 from ._geometry import EARTH_ROTATION, Directions, equatorial_from_enu
 from ._orientation_table import Values
+from ._secondary import Secondary, secondary_si
 from .orientation import Orientation
 from .stations import Baseline
 
@@ -107,6 +108,39 @@ class PathDifferences:
     def opd_uncertainty_pole(self) -> units.Quantity:
         """From polar motion: components of s x B along the Earth's x and y axes, times the errors of the pole [m]."""
         return self._uncertainties[3] << units.m
+
+    @cached_property
+    def _secondary(self) -> Secondary:
+        turn = equatorial_from_enu(self.directions.latitude)
+        covariances = np.stack([turn @ baseline.covariance_si @ turn.T for baseline in self.baselines])
+        pole = np.maximum(*self._values.pole_sigma)
+        uvw = (self.u.value, self.v.value, self.w.value)
+        return secondary_si(self.directions, uvw, covariances, self._target_sigma, self._values.ut1_sigma, pole)
+
+    @property
+    def w_uncertainty(self) -> units.Quantity:
+        """The same as `opd_uncertainty` [m]."""
+        return self.opd_uncertainty
+
+    @property
+    def u_uncertainty(self) -> units.Quantity:
+        """Of `u`, all causes [m]."""
+        return _sealed(self._secondary.u, units.m)
+
+    @property
+    def v_uncertainty(self) -> units.Quantity:
+        """Of `v`, all causes [m]."""
+        return _sealed(self._secondary.v, units.m)
+
+    @property
+    def opd_rate_uncertainty(self) -> units.Quantity:
+        """Of `opd_rate`, all causes [m/s]."""
+        return _sealed(self._secondary.rate, units.m / units.s)
+
+    @property
+    def altitude_uncertainty(self) -> units.Quantity:
+        """Of `altitude`, all causes [deg] (target, time)."""
+        return _degrees(self._secondary.altitude)
 
     @cached_property
     def _uncertainties(self) -> FloatArray:

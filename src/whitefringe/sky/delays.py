@@ -45,9 +45,14 @@ _COLUMNS = {
     "u": "projected baseline, east on the sky",
     "v": "projected baseline, north on the sky",
     "w": "projected baseline, towards the target",
+    "opd_rate_uncertainty": "one sigma, all causes",
+    "u_uncertainty": "one sigma, all causes",
+    "v_uncertainty": "one sigma, all causes",
+    "w_uncertainty": "one sigma, all causes",
 }
 _SKY_COLUMNS = {
     "altitude": "without refraction; negative below the horizon",
+    "altitude_uncertainty": "one sigma, all causes; refraction is not in it",
     "azimuth": "from north through east",
     "parallactic_angle": "from the pole to the zenith, positive west of the meridian",
 }
@@ -159,7 +164,8 @@ def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation
     -------
     QTable
         Columns target, baseline, time (UTC), opd, its uncertainty and parts, opd_rate, opd_acceleration, u, v, w, altitude, azimuth,
-        parallactic_angle, and orientation (status of the Earth orientation), each with unit and description. The ``meta`` keys are short,
+        parallactic_angle, the uncertainties of opd_rate, u, v, w and altitude, and orientation (status of the Earth orientation), each
+        with unit and description. The ``meta`` keys are short,
         so that FITS takes them: ORIENT (the table), LASTMEAS, AGEDAYS (days from there to the last time), N_MEAS, N_PRED, N_BEYOND,
         N_BEFORE, N_GIVEN (times by status), NOTE1, ... Stars below the horizon keep their rows, with a negative altitude.
 
