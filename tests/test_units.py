@@ -115,3 +115,12 @@ def test_read_only_is_a_copy_that_cannot_be_written():
 def test_a_step_of_unknown_length_is_not_a_length():
     with pytest.raises(UnitsError, match="got step"):
         as_si(3 * STEP, u.m, "opd", "um")
+
+
+def test_masked_and_complex_values_are_refused():
+    from astropy.utils.masked import Masked
+
+    with pytest.raises(InputError, match="delay must be finite; 1 of 2 values are masked"):
+        as_quantity(Masked([0.5, 0.6] * u.um, mask=[True, False]), "delay", "a length")
+    with pytest.raises(InputError, match="delay must be real"):
+        as_quantity((1 + 2j) * u.um, "delay", "a length")

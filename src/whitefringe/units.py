@@ -6,10 +6,12 @@ Convert once, where a value enters: ``tau = as_delay_si(delay)``; a bare number 
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import fields
 from typing import Any
 
 import astropy.units as u
 import numpy as np
+from astropy.utils.masked import Masked
 from numpy.typing import NDArray
 
 from .errors import InputError, UnitsError
@@ -38,7 +40,12 @@ def as_quantity(value: Any, name: str, accepted: str) -> u.Quantity:
     """
     if isinstance(value, str) or not _carries_unit(value):
         raise UnitsError(f"{name} must carry a unit ({accepted}); got {value!r} without one")
-    quantity = u.Quantity(value, dtype=float)
+    if isinstance(value, Masked) and np.any(value.mask):
+        raise InputError(f"{name} must be finite; {int(np.sum(value.mask))} of {value.size} values are masked")
+    given = u.Quantity(value)
+    if np.iscomplexobj(given.value):
+        raise InputError(f"{name} must be real; got {value!r}")
+    quantity = u.Quantity(given, dtype=float)
     finite = np.isfinite(quantity.value)
     if not np.all(finite):
         raise InputError(f"{name} must be finite; {int(np.sum(~finite))} of {finite.size} values are not")
@@ -171,6 +178,16 @@ def as_temperature_si(value: Any, name: str = "temperature") -> Any:
     if np.any(np.asarray(result) < 0):
         raise InputError(f"{name} is below absolute zero: {quantity}")
     return float(result) if np.ndim(result) == 0 else np.asarray(result, dtype=float)
+
+
+def frozen_quantities(item: Any) -> None:
+    """Replace every Quantity in the fields of a frozen dataclass by a copy that cannot be written to: the caller's may change later."""
+    for field in fields(item):
+        value = getattr(item, field.name)
+        if isinstance(value, u.Quantity):
+            copy = value.copy()
+            copy.setflags(write=False)
+            object.__setattr__(item, field.name, copy)
 
 
 def read_only(values: Any, dtype: type = float) -> NDArray[Any]:

@@ -300,3 +300,36 @@ def test_warmer_air_keeps_its_relative_humidity():
     assert warm.vapour == pytest.approx(air.under(temperature=23 * u.deg_C).vapour_pressure_si, rel=1e-14)
     moister = air.shifted_si(humidity=0.01)
     assert moister.vapour / air.vapour_pressure_si == pytest.approx(41 / 40, rel=1e-14)
+
+
+def test_what_was_given_may_change_afterwards():
+    """A loop that adds to its own Quantity must not change what it has made before."""
+    length, warmth, made = 5 * u.m, 280 * u.K, []
+    for _ in range(3):
+        made.append(media.Segment(medium=media.Ciddor1996(temperature=warmth), length=length))
+        length += 10 * u.m
+        warmth += 5 * u.K
+    assert [item.length.value for item in made] == [5, 15, 25]
+    assert [item.medium.temperature.value for item in made] == [280, 285, 290]
+    with pytest.raises(ValueError, match="read-only"):
+        made[0].length += 1 * u.m
+
+
+@pytest.mark.parametrize(("model", "ppm"), [(media.BirchDowns1994, 450), (media.BirchDowns1994WaterScaled, 450), (media.Mathar2007, 370)])
+def test_models_for_one_fraction_of_carbon_dioxide_say_so(model, ppm):
+    assert model(co2=ppm * 1e-6).co2_si == pytest.approx(ppm * 1e-6)
+    with pytest.raises(InputError, match=rf"is for {ppm} ppm of CO2 and no other: leave co2 out, or use Ciddor1996"):
+        model(co2=400e-6)
+
+
+@pytest.mark.parametrize("co2", ["450 ppm", None, [450e-6, 400e-6], 450 * u.um])
+def test_carbon_dioxide_that_is_no_fraction(co2):
+    with pytest.raises(UnitsError, match="co2 must be one mole fraction, for example 450e-6"):
+        media.Ciddor1996(co2=co2)
+
+
+def test_refractivity_keeps_the_digits_and_the_flag():
+    air = media.Ciddor1996(extrapolate=True)
+    assert air.refractivity(0.633 * u.um).value == pytest.approx(27653.0210e-8, rel=1e-9)
+    assert "extrapolated" in air.refractivity(3 * u.um).info.description
+    assert "extrapolated" in air.index_derivative(3 * u.um, "temperature").info.description

@@ -157,3 +157,10 @@ def test_out_of_the_glass_range():
 
 def test_every_aim_is_said_in_words():
     assert all(words.startswith("least ") for words in AIMS.values())
+
+
+def test_one_light_need_not_be_a_list_and_only_glass_will_do(found):
+    assert media.compensator(ARMS, SILICA, LIGHTS[0]).thickness.value > 0 * u.mm
+    for thing in (media.Vacuum(), AIR, "fused silica"):
+        with pytest.raises(InputError, match=r"glass must be a media\.Glass"):
+            media.compensator(ARMS, thing, LIGHTS)

@@ -199,3 +199,17 @@ def test_shapes_and_order():
     assert glass.group_index(where.to(u.THz, u.spectral())).value == pytest.approx(index.value, rel=1e-15)
     assert glass.group_index([] * u.um).shape == (0,)
     assert glass.refractive_index(np.float32(1.0) * u.um).shape == ()
+
+
+def test_a_formula_without_a_real_index_is_refused(tmp_path):
+    path = tmp_path / "mine.csv"
+    head = "name,form,b1,c1,low [um],high [um],temperature [deg_C],relative_to,source\n"
+    path.write_text(head + "odd,length,-5,0.1,0.3,3,20,vacuum,invented\n", encoding="utf-8")
+    with pytest.raises(FileContentError, match=r"mine\.csv: data row 1: odd: the formula gives no real index at 0\.3 um"):
+        media.read_glasses(path)
+
+
+@pytest.mark.parametrize("name", [5, None])
+def test_a_name_is_text(name):
+    with pytest.raises(InputError, match="a glass is chosen by its name"):
+        media.Glass.named(name)

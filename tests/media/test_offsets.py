@@ -171,8 +171,38 @@ def test_messages():
         media.band_offset(pair(), RED, NEAR, by="phase")
     with pytest.raises(UnitsError, match="temperature must carry a unit"):
         media.AirUncertainty(temperature=0.5)
-    with pytest.raises(InputError, match="an uncertainty must be zero or more"):
+    with pytest.raises(InputError, match="an uncertainty must be one number, zero or more"):
         media.AirUncertainty(pressure=-1 * u.hPa)
     mixed = replace(RED, lines=(spectra.Line(wavelength=0.8 * u.um, strength=RED.total_rate),))
     with pytest.raises(InputError, match="not defined for light of continuum and lines together"):
         media.band_offset(pair(), mixed, NEAR)
+
+
+@pytest.mark.parametrize(
+    ("arguments", "message"),
+    [
+        (([ARMS := pair()], RED, NEAR), "pair must be a media.ArmPair"),
+        ((ARMS, 0.8 * u.um, NEAR), "lights must be one or more spectra"),
+        ((ARMS, RED, None), "lights must be one or more spectra"),
+    ],
+)
+def test_wrong_things_are_named(arguments, message):
+    with pytest.raises(InputError, match=message):
+        media.band_offset(*arguments)
+
+
+def test_an_uncertainty_of_the_air_is_not_a_temperature():
+    with pytest.raises(InputError, match=r"air must be a media\.AirUncertainty"):
+        media.band_offset(pair(), RED, NEAR, air=1 * u.K)
+    with pytest.raises(InputError, match="an uncertainty must be one number"):
+        media.AirUncertainty(temperature=[1, 2] * u.K)
+
+
+def test_air_by_two_models_in_one_pair_is_flagged():
+    """What parts the models, about 5e-8, then stands in the path difference."""
+    dry = {"temperature": 288.15 * u.K, "pressure": 101325 * u.Pa, "humidity": 10 * u.percent}
+    ours, other = media.Ciddor1996(**dry, co2=370e-6), media.Mathar2007(**dry)
+    arms = media.ArmPair(first=[media.Segment(medium=ours, length=24 * u.m)], second=[media.Segment(medium=other, length=24 * u.m)])
+    words = "the arms' air is by different models, Ciddor 1996 and Mathar 2007"
+    assert words in arms.opd(1.5 * u.um).info.description
+    assert any(words in flag for flag in media.band_offset(arms, band(1.45, 0.05), band(1.6, 0.05)).flags)

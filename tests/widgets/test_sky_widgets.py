@@ -153,7 +153,7 @@ def test_both_signs_of_all_baselines_are_drawn_east_to_the_left(night_panel, nig
     rows = night(night_bench).rows
     drawn = night_panel.uv.chosen
     east = drawn.x[np.isfinite(drawn.x)]
-    assert east.tolist() == [*rows["u"].to_value(u.m), *(-rows["u"].to_value(u.m))]
+    assert east.tolist() == [*rows["u_icrs"].to_value(u.m), *(-rows["u_icrs"].to_value(u.m))]
     assert np.isfinite(night_panel.uv.others.x).sum() == 4 * len(rows)
     assert np.isfinite(night_panel.uv.chosen_seen.y).sum() == 2 * rows["observable"].sum()
     assert night_panel.uv.x.max == night_panel.uv.y.max

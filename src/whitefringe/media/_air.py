@@ -12,9 +12,9 @@ import numpy as np
 
 from ..errors import InputError, UnitsError
 from ..parameters import parameter
-from ..units import PPM, SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, positive_si
+from ..units import PPM, SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, frozen_quantities, positive_si
 from ._derivatives import times_wavenumber
-from .medium import Medium, Range, one_temperature_si
+from .medium import Medium, Range, flagged, one_temperature_si
 from .moist_air import SATURATION_FORMS, saturation_si
 
 CONDITIONS = ("temperature", "pressure", "humidity")
@@ -48,6 +48,8 @@ class Air(Medium):
         Go beyond the model's ranges, and have the results flagged.
     saturation : str
         Form of the saturation vapour pressure, see `saturation_vapour_pressure`.
+    co2 : float or Quantity
+        Mole fraction of carbon dioxide; most models are for one only.
     """
 
     temperature: u.Quantity = parameter("air temperature", u.deg_C, low=-10.0, high=40.0, step=0.1, start=15.0, default=15.0 * u.deg_C)
@@ -55,12 +57,17 @@ class Air(Medium):
     humidity: u.Quantity = parameter("relative humidity", u.percent, low=0.0, high=100.0, step=1.0, start=0.0, default=0.0 * u.percent)
     extrapolate: bool = False
     saturation: str = "iapws"
+    co2: Any = 450e-6
 
     shape: ClassVar[str]
     stated: ClassVar[tuple[Range, Range, Range]]
     """Ranges of temperature [deg_C], pressure [kPa] and relative humidity [%]."""
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
+        if co2_fraction(self.co2) != self.co2_si:
+            words = f"{self.name} is for {1e6 * self.co2_si:g} ppm of CO2 and no other"
+            raise InputError(f"{words}: leave co2 out, or use Ciddor1996; got {self.co2}")
         if self.saturation not in SATURATION_FORMS:
             raise InputError(f"saturation must be one of {', '.join(SATURATION_FORMS)}; got {self.saturation!r}")
         positive_si(self.pressure, u.Pa, "pressure", "hPa")
@@ -69,9 +76,9 @@ class Air(Medium):
                 f"humidity must be from 0 to 100 %, or up to {self._saturated_si:.5g} Pa of vapour at this temperature; "
                 f"got {self.humidity} ({self.relative_humidity:.4g} of saturation)"
             )
-        words = [text for text in self._outside() if text]
-        if words and not self.extrapolate:
-            raise InputError(f"{self.name}: {'; '.join(words)}; use another model, or say extrapolate=True to have the results flagged")
+        outside = [text for text in self._outside() if text]
+        if outside and not self.extrapolate:
+            raise InputError(f"{self.name}: {'; '.join(outside)}; use another model, or say extrapolate=True to have the results flagged")
 
     def _outside(self) -> list[str]:
         temperature, pressure, humidity = self.stated
@@ -90,7 +97,7 @@ class Air(Medium):
         return True
 
     def under(self, *, temperature: Any = None, pressure: Any = None, humidity: Any = None) -> Self:
-        """Return the same model under other conditions."""
+        """Return the same model under other conditions; a humidity in percent stays that, one given as a vapour pressure stays that."""
         given = {"temperature": temperature, "pressure": pressure, "humidity": humidity}
         return replace(self, **{key: value for key, value in given.items() if value is not None})
 
@@ -187,10 +194,10 @@ class Air(Medium):
         if by not in STEPS:
             raise InputError(f"by must be one of {', '.join(STEPS)}; got {by!r}")
         sigma = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float) / SPEED_OF_LIGHT
-        self.flags_si(sigma)
+        flags = self.flags_si(sigma)
         step = STEPS[by]
         change = (function(sigma, {by: step}) - function(sigma, {by: -step})) / (2 * step)
-        return u.Quantity(change, 1 / DERIVATIVE_UNITS[by])
+        return flagged(u.Quantity(change, 1 / DERIVATIVE_UNITS[by]), flags)
 
 
 HUMIDITY = "a relative humidity or a vapour pressure, for example 40 * u.percent or 900 * u.Pa"
@@ -198,9 +205,15 @@ HUMIDITY = "a relative humidity or a vapour pressure, for example 40 * u.percent
 
 def co2_fraction(value: Any) -> float:
     """Return a mole fraction of carbon dioxide, given bare (450e-6) or in `units.PPM`."""
-    quantity = u.Quantity(value)
+    words = f"co2 must be one mole fraction, for example 450e-6 or 450 * units.PPM; got {value!r}"
+    if value is None or isinstance(value, str):
+        raise UnitsError(words)
+    try:
+        quantity = u.Quantity(value, dtype=float)
+    except (TypeError, ValueError):
+        raise UnitsError(words) from None
     if not quantity.unit.is_equivalent(PPM) or quantity.ndim:
-        raise UnitsError(f"co2 must be one mole fraction, for example 450e-6 or 450 * units.PPM; got {value!r}")
+        raise UnitsError(words)
     fraction = float(quantity.to_value(u.dimensionless_unscaled))
     if not 0 <= fraction <= 0.1:
         raise InputError(f"co2 must be a mole fraction from 0 to 0.1, for example 450e-6 for 450 ppm; got {value!r}")

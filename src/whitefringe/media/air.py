@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from typing import Any, ClassVar
+from typing import ClassVar
 
 import numpy as np
 
@@ -58,15 +58,10 @@ class Ciddor1996(Air):
     27137.273 27925.601
     """
 
-    co2: Any = 450e-6
     name: str = field(default="Ciddor 1996", init=False)
     shape: ClassVar[str] = "ciddor 1996"
     wavelengths: ClassVar[Range] = Range(name="wavelength", low=0.3, high=1.7, unit="um", source=STATED)
     stated: ClassVar[tuple[Range, Range, Range]] = _STATED
-
-    def __post_init__(self) -> None:
-        co2_fraction(self.co2)
-        super().__post_init__()
 
     @property
     def co2_si(self) -> float:

@@ -13,9 +13,9 @@ import numpy as np
 
 from ..errors import InputError
 from ..spectra import Spectrum
-from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_si
+from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_si, frozen_quantities
 from ._derivatives import times_wavenumber
-from .medium import Medium, Vacuum
+from .medium import Medium, Vacuum, flagged
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -45,6 +45,7 @@ class Segment:
     temperature_uncertainty: u.Quantity = 0.0 * u.K
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
         if not isinstance(self.medium, Medium):
             raise InputError(f"medium must be one such as media.Ciddor1996(...) or media.Glass.named(...); got {self.medium!r}")
         for name, unit in (("length", u.m), ("length_uncertainty", u.m), ("temperature_uncertainty", u.K)):
@@ -129,6 +130,10 @@ class ArmPair:
     def check_si(self, wavenumber: FloatArray) -> tuple[str, ...]:
         """Return flags of what is extrapolated at these wavenumbers [1/m], each once; raise where it may not be."""
         flags = dict.fromkeys(words for _, item in self.signed for words in item.medium_here.flags_si(np.asarray(wavenumber, dtype=float)))
+        models = dict.fromkeys(item.medium.name for _, item in self.signed if item.medium.is_air)
+        if len(models) > 1:
+            words = f"the arms' air is by different models, {' and '.join(models)}"
+            flags[f"{words}: what parts the models does not cancel between the arms"] = None
         return tuple(flags)
 
     def flags(self, *lights: Spectrum) -> tuple[str, ...]:
@@ -143,22 +148,22 @@ class ArmPair:
         wavelength : Quantity [vacuum wavelength or frequency], any shape
         """
         sigma, flags = self._checked(wavelength)
-        return _flagged((self.geometric_si + self.refraction_si(sigma)[0] / sigma) * u.m, flags)
+        return flagged((self.geometric_si + self.refraction_si(sigma)[0] / sigma) * u.m, flags)
 
     def group_opd(self, wavelength: Any) -> u.Quantity:
         """Return the group path difference: sum of n_g L over the second arm less that over the first [m]."""
         sigma, flags = self._checked(wavelength)
-        return _flagged((self.geometric_si + self.refraction_si(sigma)[1]) * u.m, flags)
+        return flagged((self.geometric_si + self.refraction_si(sigma)[1]) * u.m, flags)
 
     def phase_delay(self, wavelength: Any) -> u.Quantity:
         """Return the phase delay, `opd` over c [fs]."""
         sigma, flags = self._checked(wavelength)
-        return _flagged(self._over_c(self.refraction_si(sigma)[0] / sigma), flags)
+        return flagged(self._over_c(self.refraction_si(sigma)[0] / sigma), flags)
 
     def group_delay(self, wavelength: Any) -> u.Quantity:
         """Return the group delay d(omega opd / c)/domega, `group_opd` over c [fs]."""
         sigma, flags = self._checked(wavelength)
-        return _flagged(self._over_c(self.refraction_si(sigma)[1]), flags)
+        return flagged(self._over_c(self.refraction_si(sigma)[1]), flags)
 
     def _over_c(self, refraction: FloatArray) -> u.Quantity:
         """A path difference [m] with that of the geometry, as a time."""
@@ -167,12 +172,12 @@ class ArmPair:
     def group_delay_dispersion(self, wavelength: Any) -> u.Quantity:
         """Return the dispersion of order 2, d^2(omega opd / c)/domega^2 [fs^2]."""
         sigma, flags = self._checked(wavelength)
-        return _flagged(self.refraction_si(sigma)[2] / (2 * np.pi * SPEED_OF_LIGHT**2) * 1e30 * u.fs**2, flags)
+        return flagged(self.refraction_si(sigma)[2] / (2 * np.pi * SPEED_OF_LIGHT**2) * 1e30 * u.fs**2, flags)
 
     def third_order_dispersion(self, wavelength: Any) -> u.Quantity:
         """Return the dispersion of order 3, d^3(omega opd / c)/domega^3 [fs^3]."""
         sigma, flags = self._checked(wavelength)
-        return _flagged(self.refraction_si(sigma)[3] / (4 * np.pi**2 * SPEED_OF_LIGHT**3) * 1e45 * u.fs**3, flags)
+        return flagged(self.refraction_si(sigma)[3] / (4 * np.pi**2 * SPEED_OF_LIGHT**3) * 1e45 * u.fs**3, flags)
 
     def _checked(self, wavelength: Any) -> tuple[FloatArray, tuple[str, ...]]:
         sigma = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float) / SPEED_OF_LIGHT
@@ -224,9 +229,3 @@ def _rates(light: Spectrum) -> tuple[FloatArray, FloatArray]:
     rate = np.concatenate([light.density * light.step_si, [strength for _, strength in lines]]) / light.total_rate
     order = np.argsort(frequency)
     return frequency[order], rate[order]
-
-
-def _flagged(value: u.Quantity, flags: tuple[str, ...]) -> u.Quantity:
-    if flags:
-        value.info.description = "; ".join(flags)
-    return value

@@ -19,7 +19,7 @@ from ._derivatives import times_wavenumber
 from .arms import ArmPair, Segment
 from .glasses import Glass
 from .packets import DispersedPacket, centre_si, coarser
-from .uncertainty import AirUncertainty, total, uncertainties
+from .uncertainty import AirUncertainty, check_arms_and_lights, total, uncertainties
 
 AIMS = {
     "contrast loss": "least sum of -ln(greatest contrast) over the bands, each at its own best path difference",
@@ -125,11 +125,12 @@ def compensator(
     >>> print(f"{found.thickness.to(u.mm):.3f}, contrast {found.before[0].value:.3f} to {found.contrasts[0].value:.5f}")
     16.442 mm, contrast 0.296 to 0.99983
     """
-    lights = tuple(lights)
+    lights = (lights,) if isinstance(lights, Spectrum) else tuple(lights)
+    check_arms_and_lights(pair, lights, air)
+    if not isinstance(glass, Glass):
+        raise InputError(f'glass must be a media.Glass such as media.Glass.named("fused silica"); got {glass!r}')
     if minimise not in AIMS:
         raise InputError(f"minimise must be one of {', '.join(AIMS)}; got {minimise!r}")
-    if not lights or not all(isinstance(light, Spectrum) for light in lights):
-        raise InputError(f"lights must be one or more spectra such as spectra.detected(...); got {lights!r}")
     if minimise == "group delay spread" and len(lights) < 2:
         raise InputError("a spread of group delays needs two bands or more; for one band ask for the contrast loss")
     flags = with_plate(pair, glass, 1e-3).flags(*lights)

@@ -12,7 +12,7 @@ import numpy as np
 
 from ..errors import FileContentError, InputError, UnitsError
 from ..io import read_packaged, read_table
-from ..units import FloatArray, as_si, read_only
+from ..units import FloatArray, as_si, frozen_quantities, read_only
 from ._derivatives import composed, poles, polynomial, product, rescaled, root_of_one_plus, times_wavenumber
 from .air import PER_MICROMETRE, Ciddor1996
 from .medium import Medium, Range, one_temperature_si
@@ -85,6 +85,7 @@ class Glass(Medium):
     shape: ClassVar[str] = "glass"
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
         object.__setattr__(self, "strengths", read_only(self.strengths))
         squares = self._squares
         if self.strengths.ndim != 1 or not self.strengths.size or self.strengths.shape != squares.shape:
@@ -100,7 +101,16 @@ class Glass(Medium):
             raise InputError(f"{self.name}: low must be above zero and below high; got {self.low} and {self.high}")
         if np.any((squares > self._ends[0] ** 2) & (squares < self._ends[1] ** 2)):
             raise InputError(f"{self.name}: a resonance lies within {self.low} to {self.high}, where the formula would have no index")
+        self._check_index()
         self._check_temperature()
+
+    def _check_index(self) -> None:
+        at = np.linspace(*self._ends, 101)
+        with np.errstate(all="ignore"):
+            n = self._sellmeier(1 / at)[0]
+        bad = ~(np.isfinite(n) & (n > 0))
+        if np.any(bad):
+            raise InputError(f"{self.name}: the formula gives no real index at {at[bad][0]:.4g} um, within its own range")
 
     def _check_temperature(self) -> None:
         change = self._warmer
@@ -121,9 +131,11 @@ class Glass(Medium):
         InputError
             Unknown name; the message lists the known ones.
         """
+        if not isinstance(name, str):
+            raise InputError(f'a glass is chosen by its name, such as "fused silica"; got {name!r}')
         known = packaged_glasses() if table is None else read_glasses(table)
         for glass in known:
-            if glass.name.casefold() == name.casefold():
+            if glass.name.casefold() == name.strip().casefold():
                 return glass
         raise InputError(f"no glass is named {name!r}; there are {', '.join(glass.name for glass in known)}")
 

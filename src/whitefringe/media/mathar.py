@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 from functools import cache
-from typing import ClassVar, NamedTuple
+from typing import Any, ClassVar, NamedTuple
 
 import numpy as np
 
@@ -72,6 +72,7 @@ class Mathar2007(Air):
     19994.8569 20026.3223
     """
 
+    co2: Any = 370e-6
     name: str = field(default="Mathar 2007", init=False)
     shape: ClassVar[str] = "mathar 2007"
     stated: ClassVar[tuple[Range, Range, Range]] = (

@@ -117,6 +117,10 @@ class Medium:
         """
         return self._flagged(wavelength, lambda sigma: 1.0 + self.refractivity_si(sigma)[0], u.dimensionless_unscaled)
 
+    def refractivity(self, wavelength: Any) -> u.Quantity:
+        """Return n - 1, which loses no digits where n is close to 1; arguments as for `refractive_index`."""
+        return self._flagged(wavelength, lambda sigma: self.refractivity_si(sigma)[0], u.dimensionless_unscaled)
+
     def group_index(self, wavelength: Any) -> u.Quantity:
         """Return the group index n_g = n + sigma dn/dsigma = n - lambda dn/dlambda; arguments as for `refractive_index`."""
         return self._flagged(wavelength, lambda sigma: 1.0 + self._path_si(sigma)[1], u.dimensionless_unscaled)
@@ -143,10 +147,14 @@ class Medium:
     def _flagged(self, wavelength: Any, function: Any, unit: u.UnitBase) -> u.Quantity:
         sigma = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float) / SPEED_OF_LIGHT
         flags = self.flags_si(sigma)
-        result = u.Quantity(function(sigma), unit)
-        if flags:
-            result.info.description = "; ".join(flags)
-        return result
+        return flagged(u.Quantity(function(sigma), unit), flags)
+
+
+def flagged(value: u.Quantity, flags: tuple[str, ...]) -> u.Quantity:
+    """Return the value with what was extrapolated as its description."""
+    if flags:
+        value.info.description = "; ".join(flags)
+    return value
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -11,7 +11,7 @@ from ..results import Measured
 from ..spectra import Spectrum
 from .arms import ArmPair
 from .packets import DispersedPacket, centre_si, coarser
-from .uncertainty import AirUncertainty, Function, by_air, total, uncertainties
+from .uncertainty import AirUncertainty, Function, by_air, check_arms_and_lights, total, uncertainties
 
 DEFINITIONS = {
     "group delay": "centre of |gamma|^2 (group delay weighted by the squared spectrum)",
@@ -91,6 +91,7 @@ def band_offset(
     >>> print(f"{found.offset.value:.2f}, {found.per_kelvin.value:.4f}, {found.per_metre.value:.3f}")
     228.87 um, -0.7848 um / K, 5.722 um / m
     """
+    check_arms_and_lights(pair, (light_a, light_b), air)
     if by not in DEFINITIONS:
         raise InputError(f"by must be one of {', '.join(DEFINITIONS)}; got {by!r}")
     flags = pair.flags(light_a, light_b)

@@ -10,7 +10,7 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import InputError
-from ..units import SPEED_OF_LIGHT, FloatArray, one_frequency_si
+from ..units import SPEED_OF_LIGHT, FloatArray, frozen_quantities, one_frequency_si
 from ._air import CONDITIONS, Air
 from .medium import Medium
 
@@ -50,6 +50,7 @@ class TwoModelAir(Medium):
     shape: ClassVar[str] = "two air models"
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
         if not isinstance(self.short, Air) or not isinstance(self.long, Air):
             raise InputError("short and long must be air models such as media.Ciddor1996(...) and media.Mathar2007(...)")
         if not np.allclose(self.short.state_si, self.long.state_si, rtol=1e-9):

@@ -10,7 +10,8 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import InputError
-from ..units import as_quantity, as_si
+from ..spectra import Spectrum
+from ..units import as_quantity, as_si, frozen_quantities
 from ._air import STEPS
 from .arms import ArmPair, Segment
 
@@ -43,18 +44,29 @@ class AirUncertainty:
     humidity: u.Quantity = 0.0 * u.percent
 
     def __post_init__(self) -> None:
-        if min(self.steps_si.values()) < 0:
-            raise InputError(f"an uncertainty must be zero or more; got {self}")
+        frozen_quantities(self)
+        if any(np.ndim(step) or step < 0 for step in self.steps_si.values()):
+            raise InputError(f"an uncertainty must be one number, zero or more; got {self}")
 
     @property
     def steps_si(self) -> dict[str, float]:
         """Standard deviations [K, Pa, 1]."""
         as_quantity(self.humidity, "humidity", "for example 3 * u.percent")
         return {
-            "temperature": float(as_si(self.temperature, u.K, "temperature")),
-            "pressure": float(as_si(self.pressure, u.Pa, "pressure", "hPa")),
-            "humidity": float(as_si(self.humidity, u.dimensionless_unscaled, "humidity", "percent")),
+            "temperature": as_si(self.temperature, u.K, "temperature"),
+            "pressure": as_si(self.pressure, u.Pa, "pressure", "hPa"),
+            "humidity": as_si(self.humidity, u.dimensionless_unscaled, "humidity", "percent"),
         }
+
+
+def check_arms_and_lights(pair: Any, lights: tuple[Any, ...], air: Any) -> None:
+    """Refuse what is not a pair of arms, spectra, and an `AirUncertainty` or nothing."""
+    if not isinstance(pair, ArmPair):
+        raise InputError(f"pair must be a media.ArmPair; got {pair!r}")
+    if not lights or not all(isinstance(light, Spectrum) for light in lights):
+        raise InputError(f"lights must be one or more spectra such as spectra.detected(source, filter); got {lights!r}")
+    if air is not None and not isinstance(air, AirUncertainty):
+        raise InputError(f"air must be a media.AirUncertainty; got {air!r}")
 
 
 Function = Callable[[ArmPair, dict[str, Any]], float]

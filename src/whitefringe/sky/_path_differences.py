@@ -14,6 +14,7 @@ from astropy.time import Time
 
 from ..units import FloatArray
 from ._geometry import EARTH_ROTATION, Directions, equatorial_from_enu
+from ._north import earth_si, north_angle_si
 from ._orientation_table import Values
 from ._secondary import Secondary, secondary_si
 from .orientation import Orientation
@@ -25,7 +26,8 @@ class PathDifferences:
     """Geometric path differences of targets, baselines and times, with their uncertainties by cause.
 
     Arrays are (target, baseline, time), those of the sky alone (target, time). `opd` = w = B.s is positive where station 2 is nearer the
-    object and its delay line must add `opd`. Uncertainties are one sigma.
+    object and its delay line must add `opd`. Uncertainties are one sigma. `u` and `v` count from the pole of date, as hour angle,
+    declination and parallactic angle do; `u_icrs` and `v_icrs` from ICRS north, as the position angles of catalogues do.
 
     Parameters
     ----------
@@ -46,6 +48,7 @@ class PathDifferences:
     _target_sigma: FloatArray
     _longitude: float
     _values: Values
+    _places: tuple[FloatArray | None, ...]
 
     @cached_property
     def _vectors(self) -> FloatArray:
@@ -71,6 +74,25 @@ class PathDifferences:
     def v(self) -> units.Quantity:
         """Projected baseline towards the north on the sky [m]."""
         return _sealed(np.matmul(self._vectors, self.directions.north_on_sky), units.m)
+
+    @cached_property
+    def north_angle(self) -> units.Quantity:
+        """Position angle, in the ICRS, of the north that `u` and `v` count from [deg] (target, time); zero for what is no star."""
+        earth = earth_si(self.times)
+        angles = [np.zeros(self.times.size) if place is None else north_angle_si(place, earth) for place in self._places]
+        return _degrees(np.array(angles))
+
+    @cached_property
+    def u_icrs(self) -> units.Quantity:
+        """Projected baseline towards ICRS east [m]: what goes with position angles in the ICRS, as of `Binary` or a `Picture`."""
+        angle = self.north_angle.to_value(units.rad)[:, None, :]
+        return _sealed(self.u.value * np.cos(angle) + self.v.value * np.sin(angle), units.m)
+
+    @cached_property
+    def v_icrs(self) -> units.Quantity:
+        """Projected baseline towards ICRS north [m]."""
+        angle = self.north_angle.to_value(units.rad)[:, None, :]
+        return _sealed(self.v.value * np.cos(angle) - self.u.value * np.sin(angle), units.m)
 
     @cached_property
     def opd_rate(self) -> units.Quantity:

@@ -21,7 +21,7 @@ from ._geometry import directions
 from ._path_differences import PathDifferences
 from .orientation import STATUSES, EarthOrientation
 from .stations import Array, Baseline
-from .targets import TARGET_KINDS
+from .targets import TARGET_KINDS, Star
 
 __all__ = [
     "HourAngleDelays",
@@ -42,9 +42,11 @@ _COLUMNS = {
     "opd_uncertainty_pole": "one sigma, from polar motion",
     "opd_rate": "change of opd",
     "opd_acceleration": "change of opd_rate",
-    "u": "projected baseline, east on the sky",
-    "v": "projected baseline, north on the sky",
+    "u": "projected baseline, east on the sky (equator of date)",
+    "v": "projected baseline, north on the sky (equator of date)",
     "w": "projected baseline, towards the target",
+    "u_icrs": "projected baseline, east in the ICRS, to go with position angles there",
+    "v_icrs": "projected baseline, north in the ICRS",
     "opd_rate_uncertainty": "one sigma, all causes",
     "u_uncertainty": "one sigma, all causes",
     "v_uncertainty": "one sigma, all causes",
@@ -128,6 +130,7 @@ def path_differences(
         seen = directions(array.location, chosen, utc)
         sigma = np.stack([target.sigma_si(utc) for target in chosen])
         at, values = used.at_si(utc)
+        places = tuple(target.positions_si(utc) if isinstance(target, Star) else None for target in chosen)
     return PathDifferences(
         targets=tuple(target.name for target in chosen),
         baselines=pairs,
@@ -137,6 +140,7 @@ def path_differences(
         _target_sigma=sigma,
         _longitude=float(array.location.geodetic.lon.to_value(u.rad)),
         _values=values,
+        _places=places,
     )
 
 
@@ -163,9 +167,9 @@ def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation
     Returns
     -------
     QTable
-        Columns target, baseline, time (UTC), opd, its uncertainty and parts, opd_rate, opd_acceleration, u, v, w, altitude, azimuth,
-        parallactic_angle, the uncertainties of opd_rate, u, v, w and altitude, and orientation (status of the Earth orientation), each
-        with unit and description. The ``meta`` keys are short,
+        Columns target, baseline, time (UTC), opd, its uncertainty and parts, opd_rate, opd_acceleration, u, v, w, u_icrs, v_icrs, altitude,
+        azimuth, parallactic_angle, the uncertainties of opd_rate, u, v, w and altitude, and orientation (status of the Earth
+        orientation), each with unit and description. The ``meta`` keys are short,
         so that FITS takes them: ORIENT (the table), LASTMEAS, AGEDAYS (days from there to the last time), N_MEAS, N_PRED, N_BEYOND,
         N_BEFORE, N_GIVEN (times by status), NOTE1, ... Stars below the horizon keep their rows, with a negative altitude.
 

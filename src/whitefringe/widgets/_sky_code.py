@@ -40,7 +40,7 @@ def observation_code(night: Observation | None) -> list[str]:
         f"    least_altitude={_value(night.least_altitude)}, sun_below={_value(night.sun_below)}, step={_value(night.step)},",
         f"    target={night.target!r}, baseline={night.baseline!r}{_orientation(night.orientation)})",
         "track = night.rows  # path difference, its uncertainty by cause, rate, u, v, carriages",
-        'contrast = abs(sky.band_visibility(night.chosen_object, track["u"], track["v"], light))',
+        'contrast = abs(sky.band_visibility(night.chosen_object, track["u_icrs"], track["v_icrs"], light))',
     ]
     return lines + (["windows = night.windows"] if night.delay_lines else [])
 

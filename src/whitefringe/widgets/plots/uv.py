@@ -86,7 +86,7 @@ def uv_tracks(night: Observation) -> list[tuple[str, FloatArray, FloatArray, Flo
     table = night.table
     for baseline in night.array.baselines:
         mine = np.flatnonzero((table["target"] == night.target) & (table["baseline"] == baseline.name))
-        east, north = (np.asarray(table[name].to_value(u.m))[mine] for name in ("u", "v"))
+        east, north = (np.asarray(table[name].to_value(u.m))[mine] for name in ("u_icrs", "v_icrs"))
         altitude = np.asarray(table["altitude"].to_value(u.deg))[mine]
         seen = np.asarray(table["observable"])[mine] if "observable" in table.colnames else ~(altitude < low)
         found.append((baseline.name, east, north, seen))

@@ -63,7 +63,7 @@ class VisibilityPlot(SkyView):
         if not self.new("curves", night.table, night.target, night.baseline, night.chosen_object, light):
             return
         hours, seen = hours_of(night), observable(night)
-        east, north = (np.asarray(night.rows[name].to_value(u.m)) for name in ("u", "v"))
+        east, north = (np.asarray(night.rows[name].to_value(u.m)) for name in ("u_icrs", "v_icrs"))
         wavelength = float(self.bench.results.wavelength.to_value(u.m))
         mean = np.abs(night.chosen_object.visibility_si(east / wavelength, north / wavelength))
         try:
