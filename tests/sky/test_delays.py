@@ -290,3 +290,11 @@ def test_results_cannot_be_written_to():
     for name in ("opd", "u", "opd_rate", "opd_acceleration", "opd_uncertainty", "altitude"):
         with pytest.raises(ValueError, match="read-only"):
             getattr(result, name)[0] = 0
+
+
+def test_a_target_below_the_horizon_is_flagged_in_its_rows():
+    table = track(larkmoor(), [star("south", 15, -80), LampTarget()], NIGHT, FIXED)
+    south, lamp = (table[table["target"] == name] for name in ("south", "lamp"))
+    assert np.all(south["altitude"] < 0 * u.deg)
+    assert not np.any(south["above_horizon"])
+    assert np.all(lamp["above_horizon"])

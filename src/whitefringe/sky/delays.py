@@ -171,7 +171,8 @@ def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation
         azimuth, parallactic_angle, the uncertainties of opd_rate, u, v, w and altitude, and orientation (status of the Earth
         orientation), each with unit and description. The ``meta`` keys are short,
         so that FITS takes them: ORIENT (the table), LASTMEAS, AGEDAYS (days from there to the last time), N_MEAS, N_PRED, N_BEYOND,
-        N_BEFORE, N_GIVEN (times by status), NOTE1, ... Stars below the horizon keep their rows, with a negative altitude.
+        N_BEFORE, N_GIVEN (times by status), NOTE1, ... Stars below the horizon keep their rows, with a negative altitude and
+        `above_horizon` false.
 
     Raises
     ------
@@ -201,6 +202,9 @@ def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation
     for name, words in _SKY_COLUMNS.items():
         table[name] = np.broadcast_to(getattr(result, name)[:, None, :], shape, subok=True).reshape(-1)
         table[name].info.description = words
+    # a lamp has no altitude, and is never below the horizon
+    table["above_horizon"] = ~(table["altitude"] < 0 * u.deg)
+    table["above_horizon"].info.description = "false where the target has set or not yet risen"
     table["orientation"] = result.orientation.status[k]
     table["orientation"].info.description = "where the Earth orientation is from"
     table.meta.update(_meta(array, result))
