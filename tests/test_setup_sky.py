@@ -85,9 +85,15 @@ def test_a_picture_is_not_written(tmp_path, setup):
         ('up = "0.5 m"\n', "", r"array.station\[1\]: a station has east, north and up, or x, y and z; got east, north"),
         ('name = "Weir"', 'name = "Kiln"', "array: station names must differ; twice or more: Kiln"),
         ('latitude = "35 deg"', 'latitude = "95 deg"', "array.latitude: must lie between -90 and 90 deg; got 95.0 deg"),
-        ('height = "1000 m"', 'height = "1000 s"', "array.height: must be in a unit such as m; got 1000.0 s"),
+        ('height = "1000 m"', 'height = "1000 s"', "array.height: must be one number in a unit such as m; got 1000.0 s"),
         ('dec = "25 deg"', 'dec = "125 deg"', r"target\[0\]: dec of star 'Ember' must lie between -90 and 90 deg"),
         ('dec = "25 deg"\n', "", r"target\[0\]: a target has ra and dec .*or azimuth and altitude, or lamp = true; got ra, pm_ra_cosdec"),
+        ('height = "1000 m"', 'height = "1e12 m"', "array.height: must lie between -12000 and 10000 m; got"),
+        ('latitude = "35 deg"', 'latitude = "nan deg"', "array.latitude: must lie between -90 and 90 deg; got nan deg"),
+        ('latitude = "35 deg"', 'latitude = ["1 deg", "2 deg"]', "array.latitude: must be"),
+        ('ra = "60 deg"', 'ra = "04:00:00"', r"target\[0\].ra: must be a number with a unit"),
+        ('ra = "60 deg"', 'ra = "60 um"', r'target\[0\].ra: must be an angle, for example "60 deg", "04h00m00s"'),
+        ('temperature = "14 deg_C"', 'temperature = "14 C"', "air.temperature: is in coulomb; write deg_C"),
         ('epoch = "J2016.0"', 'epoch = "long ago"', r'target\[0\].epoch: must be a time such as "J2016.0"'),
         ('name = "Sable"', 'name = "Ember"', "target: target names must differ; twice or more: Ember"),
         ('shape = "binary"', 'shape = "star"', r"target\[1\].object.shape: must be one of point, uniform-disc, .*; got 'star'"),
@@ -162,3 +168,9 @@ def test_without_delay_lines_there_are_no_windows(setup):
     bare = replace(setup.observation, delay_lines=(), targets=setup.observation.targets[:1], objects={})
     assert bare.windows is None
     assert "carriage_1" not in bare.table.colnames
+
+
+def test_sexagesimal_angles(tmp_path):
+    place = changed(tmp_path, 'ra = "60 deg"\ndec = "25 deg"', 'ra = "04h00m30s"\ndec = "+25d30m00s"').observation.chosen_target.coordinates
+    assert place.ra.to_value(u.deg) == pytest.approx(60.125, abs=1e-12)
+    assert place.dec.to_value(u.deg) == pytest.approx(25.5, abs=1e-12)

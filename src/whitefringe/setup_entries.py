@@ -27,6 +27,8 @@ def quantity_of(value: Any) -> Any:
         raise ValueError(f'must be a number with a unit, for example "1.65 um"; got {value!r}') from None
     if quantity.unit == u.dimensionless_unscaled:
         raise ValueError(f'must carry a unit, for example "1.65 um"; got {value!r}')
+    if quantity.unit == u.C:
+        raise ValueError(f'is in coulomb; write deg_C for degrees Celsius, for example "14 deg_C"; got {value!r}')
     return quantity
 
 

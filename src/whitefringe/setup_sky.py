@@ -28,15 +28,15 @@ least_altitude = "30 deg"
 from __future__ import annotations
 
 from pathlib import Path
-from typing import Any, get_type_hints
+from typing import Annotated, Any, get_type_hints
 
 import astropy.units as u
-from astropy.coordinates import EarthLocation
+from astropy.coordinates import Angle, EarthLocation
 from astropy.time import Time
-from pydantic import Field
+from pydantic import BeforeValidator, Field
 
 from .errors import SetupError
-from .setup_entries import Entry, KeyPath, QuantityText, built, checked, member, without_shape
+from .setup_entries import Entry, KeyPath, QuantityText, built, checked, member, quantity_of, without_shape
 from .sky import (
     OBJECT_SHAPES,
     Array,
@@ -49,6 +49,22 @@ from .sky import (
     Star,
     Station,
 )
+
+
+def angle_of(value: Any) -> Any:
+    """Text such as '60 deg', '04h00m00s' or '+25d30m00s' as an angle."""
+    if not isinstance(value, str):
+        return quantity_of(value)
+    try:
+        return u.Quantity(Angle(value)).to(u.deg)
+    except (TypeError, ValueError, u.UnitsError):
+        quantity = quantity_of(value)
+    if not quantity.unit.is_equivalent(u.deg):
+        raise ValueError(f'must be an angle, for example "60 deg", "04h00m00s" or "+25d30m00s"; got {value!r}')
+    return quantity
+
+
+AngleText = Annotated[Any, BeforeValidator(angle_of)]
 
 
 class LineEntry(Entry):
@@ -80,8 +96,8 @@ class StationEntry(Entry):
 class ArrayEntry(Entry):
     """The array's place and stations."""
 
-    longitude: QuantityText
-    latitude: QuantityText
+    longitude: AngleText
+    latitude: AngleText
     height: QuantityText = 0.0 * u.m
     name: str = ""
     station: list[dict[str, Any]] = Field(min_length=2)
@@ -91,16 +107,16 @@ class TargetEntry(Entry):
     """A star, a fixed direction or the lamp."""
 
     name: str
-    ra: QuantityText = None
-    dec: QuantityText = None
+    ra: AngleText = None
+    dec: AngleText = None
     pm_ra_cosdec: QuantityText = None
     pm_dec: QuantityText = None
     parallax: QuantityText = None
     radial_velocity: QuantityText = None
     epoch: str | None = None
     proper_motion_uncertainty: QuantityText = None
-    azimuth: QuantityText = None
-    altitude: QuantityText = None
+    azimuth: AngleText = None
+    altitude: AngleText = None
     lamp: bool = False
     uncertainty: QuantityText = None
     object: dict[str, Any] | None = None
@@ -113,6 +129,10 @@ class NightEntry(Entry):
     least_altitude: QuantityText = 30.0 * u.deg
     sun_below: QuantityText = -12.0 * u.deg
     step: QuantityText = 5.0 * u.min
+
+
+PLACE = (("longitude", u.deg, -360, 360), ("latitude", u.deg, -90, 90), ("height", u.m, -12_000, 10_000))
+"""Name, unit and range of what says where the array is."""
 
 
 def read_observation(raw: dict[str, Any], air: Any, path: Path) -> Observation | None:
@@ -143,12 +163,12 @@ def read_observation(raw: dict[str, Any], air: Any, path: Path) -> Observation |
 
 
 def _location(entry: ArrayEntry, path: Path) -> EarthLocation:
-    for name, unit in (("longitude", u.deg), ("latitude", u.deg), ("height", u.m)):
+    for name, unit, low, high in PLACE:
         value = getattr(entry, name)
-        if not value.unit.is_equivalent(unit):
-            raise SetupError(f"{path}: array.{name}: must be in a unit such as {unit}; got {value}")
-    if abs(entry.latitude.to_value(u.deg)) > 90:
-        raise SetupError(f"{path}: array.latitude: must lie between -90 and 90 deg; got {entry.latitude}")
+        if not isinstance(value, u.Quantity) or not value.unit.is_equivalent(unit):
+            raise SetupError(f"{path}: array.{name}: must be one number in a unit such as {unit}; got {value}")
+        if not low <= value.to_value(unit) <= high:
+            raise SetupError(f"{path}: array.{name}: must lie between {low} and {high} {unit}; got {value}")
     return EarthLocation.from_geodetic(lon=entry.longitude, lat=entry.latitude, height=entry.height)
 
 
