@@ -81,6 +81,8 @@ def test_an_existing_table_is_kept(array, tmp_path, capsys):
     [
         (["--date", "tomorrow"], "date"),
         (["--out", "none/t.ecsv"], "there is no folder"),
+        (["--out", "gz.xyz"], "gz.xyz: the name must end in .ecsv, or for a FITS table in one of .fits, .fit, .fts, .fits.gz"),
+        (["--out", "."], ".: this is a folder; give the name of a file in it, such as table.ecsv"),
     ],
 )
 def test_bad_input(array, capsys, arguments, message):
@@ -100,5 +102,55 @@ def test_without_delay_lines(tmp_path, capsys):
     (tmp_path / "bare.toml").write_text(text, encoding="utf-8")
     assert main(["track", "--setup", str(tmp_path / "bare.toml"), "--out", str(tmp_path / "t.ecsv")]) == 0
     out = capsys.readouterr().out
+    assert "not observable" not in out
     assert "no delay lines in the setup" in " ".join(out.split())
     assert CAUTION not in out
+
+
+def test_it_can_be_read_in_a_narrow_terminal(array, tmp_path, capsys, monkeypatch):
+    """In 80 columns, and in a pipe, which has as many."""
+    monkeypatch.setenv("COLUMNS", "80")
+    assert main(["track", "--setup", array, "--out", str(tmp_path / "t.ecsv")]) == 0
+    lines = capsys.readouterr().out.splitlines()
+    assert len(lines) < 80
+    assert not any("\N{HORIZONTAL ELLIPSIS}" in line for line in lines)
+    start = lines.index(next(line for line in lines if line.startswith("windows")))
+    end = next(k for k, line in enumerate(lines) if line.startswith("not observable"))
+    assert max(len(line) for line in lines[start:end]) <= 80
+    night = Setup.read(array).observation
+    shown = " ".join(" ".join(lines[start:end]).split())
+    for row in night.windows[night.windows["observable"]]:
+        assert f"{row['target']} {row['baseline']}" in shown
+        for k in (1, 2):
+            assert any(line[17:].startswith(f"{row[f'station_{k}']} ") for line in lines[start:end])
+    # every stretch that is not in a window stands below, with numbers only where there is no window at all
+    below = [line for line in lines if line.startswith("not observable")]
+    closed = night.windows[~night.windows["observable"]]
+    assert len(below) == len({(row["target"], row["baseline"]) for row in closed})
+    assert sum(line.count("-", len("not observable: ")) for line in below) >= len(closed)
+    ember = next(line for line in below if "Ember Kiln-Weir" in line)
+    assert ember.startswith("not observable: Ember Kiln-Weir 18:47-20:04: below the horizon limit, out of stroke; ")
+    fen = next(line for line in below if "Fen Kiln-Weir" in line)
+    assert "below the horizon limit: altitude -56.8 to -2.9 deg, limit 30 deg" in fen
+
+
+def test_long_names_are_folded_not_cut(array, tmp_path, capsys, monkeypatch):
+    monkeypatch.setenv("COLUMNS", "80")
+    name = "EmberOfTheNorthernMoorWithAVeryLongName"
+    path = tmp_path / "long.toml"
+    path.write_text(ARRAY_TEXT.replace('name = "Ember"', f'name = "{name}"'), encoding="utf-8")
+    assert main(["track", "--setup", str(path), "--out", str(tmp_path / "t.ecsv")]) == 0
+    out = capsys.readouterr().out
+    assert "\N{HORIZONTAL ELLIPSIS}" not in out
+    first = [line.split()[0] for line in out.split("not observable")[0].splitlines() if line[:1].strip()]
+    assert name in "".join(first)
+
+
+def test_a_night_that_is_never_dark_names_file_and_key(tmp_path, capsys):
+    path = tmp_path / "north.toml"
+    text = ARRAY_TEXT.replace('latitude = "35 deg"', 'latitude = "65 deg"').replace('date = "2026-12-01"', 'date = "2026-06-21"')
+    path.write_text(text, encoding="utf-8")
+    assert main(["track", "--setup", str(path)]) == 2
+    assert f"{path}: night: the sun sinks no lower than" in capsys.readouterr().err
+    # with another date the file's own does not matter
+    assert main(["track", "--setup", str(path), "--date", "2026-12-01"]) == 0

@@ -87,7 +87,7 @@ def test_written_arms_read_back(tmp_path, larkmoor):
             "air.model: must be one of ciddor 1996, .*mathar 2007, two air models; got 'warm'",
         ),
         (AIR.replace("30 %", "140 %") + ARM, "air: humidity must be from 0 to 100 %"),
-        (AIR.replace('"12 deg_C"', "12") + ARM, 'air.temperature: must be text with a unit, for example "1.65 um"; got 12'),
+        (AIR.replace('"12 deg_C"', "12") + ARM, 'air.temperature: must be text with a unit, for example "288 K"; got 12'),
         (AIR + "levelled = true\n" + ARM, r'air.levelled: this key belongs to model = "two air models"'),
         (AIR.replace("ciddor 1996", "two air models") + ARM, "air.short: this key is missing"),
         (AIR + "colour = 1\n" + ARM, "air.colour: unknown key; the keys here are model, temperature"),

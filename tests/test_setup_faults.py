@@ -37,7 +37,7 @@ FAULTS = {
     ),
     "bare number": (
         '[source]\nshape = "thermal"\ntemperature = 2900\n' + BAND,
-        'source.temperature: must be text with a unit, for example "1.65 um"; got 2900',
+        'source.temperature: must be text with a unit, for example "2900 K"; got 2900',
     ),
     "text without unit": (
         GOOD.replace("2900 K", "2900"),

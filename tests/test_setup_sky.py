@@ -5,6 +5,7 @@ from dataclasses import replace
 import astropy.units as u
 import numpy as np
 import pytest
+from astropy.time import Time
 
 from whitefringe import sky
 from whitefringe.demo_array import ARRAY_TEXT
@@ -39,9 +40,9 @@ def test_array_targets_and_night(setup):
 
 
 def test_other_kinds_of_station_and_target(tmp_path):
-    here = sky.Station.geocentric(name="Weir", x=5_000_000 * u.m, y=-1_300_000 * u.m, z=3_600_000 * u.m)
+    here = sky.Station.geocentric(name="Weir", x=5_053_000 * u.m, y=-1_354_000 * u.m, z=3_638_000 * u.m)
     text = 'east = "80 m"\nnorth = "60 m"\nup = "0.5 m"'
-    setup = changed(tmp_path, text, 'x = "5000 km"\ny = "-1300 km"\nz = "3600 km"')
+    setup = changed(tmp_path, text, 'x = "5053 km"\ny = "-1354 km"\nz = "3638 km"')
     assert np.allclose(setup.observation.array.enu_si[1], here.enu_si(setup.observation.array.location))
     extra = '[[target]]\nname = "beacon"\nazimuth = "10 deg"\naltitude = "35 deg"\n\n[[target]]\nname = "lamp"\nlamp = true\n\n[night]'
     targets = changed(tmp_path, "[night]", extra).observation.targets
@@ -91,7 +92,7 @@ def test_a_picture_is_not_written(tmp_path, setup):
         ('height = "1000 m"', 'height = "1e12 m"', "array.height: must lie between -12000 and 10000 m; got"),
         ('latitude = "35 deg"', 'latitude = "nan deg"', "array.latitude: must lie between -90 and 90 deg; got nan deg"),
         ('latitude = "35 deg"', 'latitude = ["1 deg", "2 deg"]', "array.latitude: must be"),
-        ('ra = "60 deg"', 'ra = "04:00:00"', r"target\[0\].ra: must be a number with a unit"),
+        ('ra = "60 deg"', 'ra = "04:00:00"', r"target\[0\].ra: colons leave open whether hours or degrees are meant; write .04h00m00s."),
         ('ra = "60 deg"', 'ra = "60 um"', r'target\[0\].ra: must be an angle, for example "60 deg", "04h00m00s"'),
         ('temperature = "14 deg_C"', 'temperature = "14 C"', "air.temperature: is in coulomb; write deg_C"),
         ('epoch = "J2016.0"', 'epoch = "long ago"', r'target\[0\].epoch: must be a time such as "J2016.0"'),
@@ -105,6 +106,27 @@ def test_a_picture_is_not_written(tmp_path, setup):
             r'array.station\[1\].line.medium: must be "vacuum" or "air"; got \'water\'',
         ),
         ('stroke = "12 m"', 'length = "12 m"', r"array.station\[2\].line\.(stroke: this key is missing|length: unknown key)"),
+        ('date = "2026-12-01"', 'date = "next week"', r"night\.date: date must be a calendar date such as"),
+        ('step = "5 min"', 'step = "5 deg"', r"night\.step: step must be convertible to s \(for example 1 min\); got deg"),
+        ('step = "5 min"', 'step = "2 h"', r"night\.step: step must be at most 1 h, to follow the sky; got 2\.0 h"),
+        ('step = "5 min"', "step = 5", r'night\.step: must be text with a unit, for example "5 min"; got 5'),
+        ('sun_below = "-12 deg"', 'sun_below = "12 deg"', r"night\.sun_below: sun_below must be one angle from -90 to 0 deg"),
+        ('least_altitude = "30 deg"', 'least_altitude = "95 deg"', r"night\.least_altitude: least_altitude must be one angle from 0 to 90"),
+        ('latitude = "35 deg"', "latitude = 35", r'array\.latitude: must be text with a unit, for example "60 deg"; got 35'),
+        ('longitude = "-15 deg"', 'longitude = "-15:00:00"', r"array\.longitude: colons leave open whether hours or degrees are meant"),
+        ('dec = "25 deg"', 'dec = "04h00m00s"', r'target\[0\]\.dec: is in hours, .*; write degrees, as in "\+25d30m00s"'),
+        ('dec = "25 deg"', 'dec = "25d61m00s"', r"target\[0\]\.dec: must be an angle, for example"),
+        ('dec = "25 deg"', 'dec = "25d60m00s"', r"target\[0\]\.dec: must be an angle, for example"),
+        ('pm_dec = "-110 mas / yr"', "pm_dec = -110", r'target\[0\]\.pm_dec: must be text with a unit, for example "-110 mas / yr"'),
+        ('uncertainty = "1 mas"', "uncertainty = 1", r'target\[\d\]\.uncertainty: must be text with a unit, for example "1 mas"'),
+        ('east = "80 m"', "east = 80", r'array\.station\[1\]\.east: must be text with a unit, for example "20 m"'),
+        ('stroke = "12 m"', "stroke = 12", r'line\.stroke: must be text with a unit, for example "25 m"'),
+        ('separation = "6 mas"', "separation = 6", r'separation: must be text with a unit, for example "5 mas"; got 6'),
+        ('separation = "6 mas"', 'separation = "06h00m00s"', r'separation: must be a number with a unit, for example "5 mas"'),
+        ('humidity = "', "humidity = 20 # ", r'air\.humidity: must be text with a unit, for example "30 %"; got 20'),
+        ('east = "80 m"', 'east = "800 km"', r"array: station 'Weir' stands 800 km from the array's location"),
+        ('name = "Sable"', 'name = " "', r"target\[1\]: a star needs a name; got ' '"),
+        ('epoch = "J2016.0"', 'epoch = "9999-01-01"', r"target\[0\]: epoch of star 'Ember': times must lie in the years 1000 to 3000"),
         ('date = "2026-12-01"', "day = 1", r"night\.(date: this key is missing|day: unknown key)"),
     ],
 )
@@ -155,7 +177,7 @@ def test_another_choice_keeps_the_tables(setup):
         ({"target": "Moon"}, "there is no target 'Moon'; there are Ember, Sable, Rush, Fen"),
         ({"baseline": "Kiln-Mill"}, "there is no baseline 'Kiln-Mill'; there are Kiln-Weir, Kiln-Tarn, Weir-Tarn"),
         ({"targets": ()}, "targets must be one or more of Star, FixedDirection, LampTarget"),
-        ({"targets": ("Ember",)}, "targets must be one or more of Star, FixedDirection, LampTarget"),
+        ({"targets": ("Ember",)}, "a target must be one of Star, FixedDirection, LampTarget; got str"),
         ({"objects": {"Moon": sky.Point()}}, "there is no target 'Moon' for this object"),
     ],
 )
@@ -174,3 +196,26 @@ def test_sexagesimal_angles(tmp_path):
     place = changed(tmp_path, 'ra = "60 deg"\ndec = "25 deg"', 'ra = "04h00m30s"\ndec = "+25d30m00s"').observation.chosen_target.coordinates
     assert place.ra.to_value(u.deg) == pytest.approx(60.125, abs=1e-12)
     assert place.dec.to_value(u.deg) == pytest.approx(25.5, abs=1e-12)
+
+
+def test_sexagesimal_angles_of_the_place(tmp_path):
+    old = 'longitude = "-15 deg"\nlatitude = "35 deg"'
+    place = changed(tmp_path, old, 'longitude = "-01h00m30s"\nlatitude = "35d30m"').observation.array.location
+    assert place.lon.to_value(u.deg) == pytest.approx(-15.125, abs=1e-12)
+    assert place.lat.to_value(u.deg) == pytest.approx(35.5, abs=1e-12)
+
+
+def test_two_uncertainties_of_a_star_are_written(tmp_path, setup):
+    star = sky.Star.at(
+        name="Ember",
+        ra=60 * u.deg,
+        dec=25 * u.deg,
+        uncertainty=[1, 2] * u.mas,
+        proper_motion_uncertainty=[3, 4] * u.mas / u.yr,
+        epoch=Time("1850-01-01", scale="tdb"),
+    )
+    one = replace(setup, observation=replace(setup.observation, targets=[star], objects={}, target=""))
+    one.write(tmp_path / "a.toml")
+    again = Setup.read(tmp_path / "a.toml").observation.targets[0]
+    assert again.uncertainty.to_value(u.mas).tolist() == [1, 2]
+    assert again.proper_motion_uncertainty.to_value(u.mas / u.yr).tolist() == [3, 4]

@@ -2,39 +2,72 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import MISSING, fields
+from functools import partial
 from pathlib import Path
 from typing import Annotated, Any, get_type_hints
 
 import astropy.units as u
-from pydantic import BaseModel, BeforeValidator, ConfigDict, ValidationError, create_model
+from pydantic import BaseModel, BeforeValidator, ConfigDict, ValidationError, ValidationInfo, create_model
 
 from .errors import SetupError, WhitefringeError
 from .spectra import WavelengthTable
 
+SEXAGESIMAL = re.compile(r"\s*[+-]?\d+(\.\d*)?\s*[hd:°]\s*\d")
+"""How an angle in hours or degrees, minutes and seconds begins, such as 04h00m00s."""
 
-def quantity_of(value: Any) -> Any:
+EXAMPLES = {
+    "temperature": "288 K",
+    "temperature_uncertainty": "0.5 K",
+    "warmed_by": "5 K",
+    "drift": "0.05 nm / K",
+    "pressure": "850 hPa",
+    "humidity": "30 %",
+    "tilt": "5 deg",
+    "length": "12 mm",
+    "stroke": "25 m",
+    "greatest_speed": "25 mm / s",
+    "pm_ra_cosdec": "35 mas / yr",
+    "pm_dec": "-110 mas / yr",
+    "parallax": "40 mas",
+    "radial_velocity": "20 km / s",
+    "proper_motion_uncertainty": "0.02 mas / yr",
+    "least_altitude": "30 deg",
+    "sun_below": "-12 deg",
+    "step": "5 min",
+    "uncertainty": "20 um",
+    "length_uncertainty": "20 um",
+    **dict.fromkeys(("offset", "rest", "height", "east", "north", "up", "x", "y", "z"), "20 m"),
+}
+"""What a number of each name may look like, for messages; any other is a wavelength."""
+
+
+def quantity_of(value: Any, example: str = "1.65 um") -> Any:
     """Text such as '1.65 um' as a Quantity; a list of such texts as a tuple."""
     if isinstance(value, u.Quantity) or value is None:
         return value
     if isinstance(value, list) and value and all(isinstance(item, str) for item in value):
-        return tuple(quantity_of(item) for item in value)
+        return tuple(quantity_of(item, example) for item in value)
     if not isinstance(value, str):
-        raise ValueError(f'must be text with a unit, for example "1.65 um"; got {value!r}')
+        raise ValueError(f'must be text with a unit, for example "{example}"; got {value!r}')
+    if SEXAGESIMAL.match(value):
+        # "04h00m00s" would be read as four seconds
+        raise ValueError(f'must be a number with a unit, for example "{example}"; got {value!r}')
     try:
         quantity = u.Quantity(value)
     except (TypeError, ValueError):
-        raise ValueError(f'must be a number with a unit, for example "1.65 um"; got {value!r}') from None
+        raise ValueError(f'must be a number with a unit, for example "{example}"; got {value!r}') from None
     if quantity.unit == u.dimensionless_unscaled:
-        raise ValueError(f'must carry a unit, for example "1.65 um"; got {value!r}')
+        raise ValueError(f'must carry a unit, for example "{example}"; got {value!r}')
     if quantity.unit == u.C:
         raise ValueError(f'is in coulomb; write deg_C for degrees Celsius, for example "14 deg_C"; got {value!r}')
     return quantity
 
 
-def quantities_of(value: Any) -> Any:
+def quantities_of(value: Any, example: str = "1.65 um") -> Any:
     """A list of such texts, or one."""
-    return tuple(quantity_of(item) for item in value) if isinstance(value, (list, tuple)) else quantity_of(value)
+    return tuple(quantity_of(item, example) for item in value) if isinstance(value, (list, tuple)) else quantity_of(value, example)
 
 
 def number_or_table(value: Any) -> Any:
@@ -52,8 +85,11 @@ def unit_of(value: Any) -> Any:
         raise ValueError(f"{value!r} is not a unit that is known here") from None
 
 
-QuantityText = Annotated[Any, BeforeValidator(quantity_of)]
-QuantitiesText = Annotated[Any, BeforeValidator(quantities_of)]
+def _by_name(value: Any, info: ValidationInfo) -> Any:
+    return quantity_of(value, EXAMPLES.get(info.field_name or "", "1.65 um"))
+
+
+QuantityText = Annotated[Any, BeforeValidator(_by_name)]
 NumberOrTable = Annotated[Any, BeforeValidator(number_or_table)]
 UnitText = Annotated[Any, BeforeValidator(unit_of)]
 Limits = Annotated[tuple[float, float] | None, BeforeValidator(lambda value: None if value == "none" else value)]
@@ -75,13 +111,19 @@ def entry_for(cls: type[Any]) -> type[BaseModel]:
         if WavelengthTable in members:
             kind = NumberOrTable
         elif tuple[u.Quantity, ...] in members:
-            kind = QuantitiesText
+            kind = Annotated[Any, BeforeValidator(partial(quantities_of, example=_example(item)))]
         elif kind is u.Quantity or u.Quantity in members:
-            kind = QuantityText
+            kind = Annotated[Any, BeforeValidator(partial(quantity_of, example=_example(item)))]
         elif kind == tuple[float, float] | None:
             kind = Limits
         entries[item.name] = (kind, ... if item.default is MISSING else item.default)
     return create_model(cls.__name__, __base__=Entry, **entries)
+
+
+def _example(item: Any) -> str:
+    """What the field of a frozen object may look like: where its control starts, if it has one."""
+    described = item.metadata.get("parameter")
+    return EXAMPLES.get(item.name, "1.65 um") if described is None else f"{described.start:g} {described.unit}"
 
 
 class KeyPath:

@@ -16,8 +16,8 @@ line = { stroke = "25 m", greatest_speed = "25 mm / s", passes = 4 }
 
 [[target]]
 name = "Alpha"
-ra = "60 deg"                # or azimuth, altitude; or lamp = true
-dec = "25 deg"
+ra = "60 deg"                # or "04h00m00s"; or azimuth, altitude; or lamp = true
+dec = "25 deg"               # or "+25d00m00s"
 object = { shape = "uniform-disc", diameter = "1.2 mas" }
 
 [night]
@@ -28,15 +28,16 @@ least_altitude = "30 deg"
 from __future__ import annotations
 
 from pathlib import Path
-from typing import Annotated, Any, get_type_hints
+from typing import Any, get_type_hints
 
 import astropy.units as u
-from astropy.coordinates import Angle, EarthLocation
+from astropy.coordinates import EarthLocation
 from astropy.time import Time
-from pydantic import BeforeValidator, Field
+from pydantic import Field
 
 from .errors import SetupError
-from .setup_entries import Entry, KeyPath, QuantityText, built, checked, member, quantity_of, without_shape
+from .setup_angles import AngleText, DegreesText, SigmaText
+from .setup_entries import Entry, KeyPath, QuantityText, built, checked, member, without_shape
 from .sky import (
     OBJECT_SHAPES,
     Array,
@@ -49,22 +50,9 @@ from .sky import (
     Star,
     Station,
 )
-
-
-def angle_of(value: Any) -> Any:
-    """Text such as '60 deg', '04h00m00s' or '+25d30m00s' as an angle."""
-    if not isinstance(value, str):
-        return quantity_of(value)
-    try:
-        return u.Quantity(Angle(value)).to(u.deg)
-    except (TypeError, ValueError, u.UnitsError):
-        quantity = quantity_of(value)
-    if not quantity.unit.is_equivalent(u.deg):
-        raise ValueError(f'must be an angle, for example "60 deg", "04h00m00s" or "+25d30m00s"; got {value!r}')
-    return quantity
-
-
-AngleText = Annotated[Any, BeforeValidator(angle_of)]
+from .sky.observation import NIGHT_CHECKS
+from .sky.orientation import quiet
+from .sky.stations import HEIGHTS
 
 
 class LineEntry(Entry):
@@ -97,7 +85,7 @@ class ArrayEntry(Entry):
     """The array's place and stations."""
 
     longitude: AngleText
-    latitude: AngleText
+    latitude: DegreesText
     height: QuantityText = 0.0 * u.m
     name: str = ""
     station: list[dict[str, Any]] = Field(min_length=2)
@@ -108,17 +96,17 @@ class TargetEntry(Entry):
 
     name: str
     ra: AngleText = None
-    dec: AngleText = None
+    dec: DegreesText = None
     pm_ra_cosdec: QuantityText = None
     pm_dec: QuantityText = None
     parallax: QuantityText = None
     radial_velocity: QuantityText = None
     epoch: str | None = None
     proper_motion_uncertainty: QuantityText = None
-    azimuth: AngleText = None
-    altitude: AngleText = None
+    azimuth: DegreesText = None
+    altitude: DegreesText = None
     lamp: bool = False
-    uncertainty: QuantityText = None
+    uncertainty: SigmaText = None
     object: dict[str, Any] | None = None
 
 
@@ -131,7 +119,7 @@ class NightEntry(Entry):
     step: QuantityText = 5.0 * u.min
 
 
-PLACE = (("longitude", u.deg, -360, 360), ("latitude", u.deg, -90, 90), ("height", u.m, -12_000, 10_000))
+PLACE = (("longitude", u.deg, -360, 360), ("latitude", u.deg, -90, 90), ("height", u.m, *HEIGHTS))
 """Name, unit and range of what says where the array is."""
 
 
@@ -149,6 +137,9 @@ def read_observation(raw: dict[str, Any], air: Any, path: Path) -> Observation |
     if not targets:
         raise SetupError(f"{path}: target: an array needs at least one [[target]]")
     night = checked(NightEntry, raw["night"] if raw.get("night") is not None else {}, path, "night")
+    for key, check in NIGHT_CHECKS.items():
+        with KeyPath(path, f"night.{key}"):
+            check(getattr(night, key))
     objects = {item.name: read_object(item.object, path, f"target[{k}].object") for k, item in enumerate(targets) if item.object}
     with KeyPath(path, "array"):
         array = Array(
@@ -168,7 +159,7 @@ def _location(entry: ArrayEntry, path: Path) -> EarthLocation:
         if not isinstance(value, u.Quantity) or not value.unit.is_equivalent(unit):
             raise SetupError(f"{path}: array.{name}: must be one number in a unit such as {unit}; got {value}")
         if not low <= value.to_value(unit) <= high:
-            raise SetupError(f"{path}: array.{name}: must lie between {low} and {high} {unit}; got {value}")
+            raise SetupError(f"{path}: array.{name}: must lie between {low:g} and {high:g} {unit}; got {value}")
     return EarthLocation.from_geodetic(lon=entry.longitude, lat=entry.latitude, height=entry.height)
 
 
@@ -216,7 +207,8 @@ def _target(entry: TargetEntry, path: Path, key: str) -> Any:
 
 def _epoch(text: Any, path: Path, key: str) -> Time:
     try:
-        return Time(text)
+        with quiet():
+            return Time(text)
     except ValueError:
         raise SetupError(f'{path}: {key}.epoch: must be a time such as "J2016.0" or "2016-01-01"; got {text!r}') from None
 
@@ -285,11 +277,12 @@ def _star_entry(star: Star, text: Any) -> dict[str, Any]:
     if star.moves:
         entry |= {name: text(_neat(getattr(place, name).to(u.mas / u.yr))) for name in ("pm_ra_cosdec", "pm_dec")}
     if place.obstime is not None:
-        entry["epoch"] = place.obstime.utc.isot
+        with quiet():
+            entry["epoch"] = place.obstime.utc.isot
     for name in ("uncertainty", "proper_motion_uncertainty"):
         value = getattr(star, name)
-        if bool((u.Quantity(value).value != 0).any()):
-            entry[name] = text(value)
+        if bool((value.value != 0).any()):
+            entry[name] = text(value) if value.ndim == 0 else [text(item) for item in value]
     return entry
 
 

@@ -94,3 +94,21 @@ def test_others_may_read_what_the_umask_allows(tmp_path):
 def test_a_missing_folder_is_named(tmp_path):
     with pytest.raises(FileContentError, match="nowhere"):
         write_table(TABLE, tmp_path / "nowhere" / "a.ecsv")
+
+
+@pytest.mark.parametrize("name", ["gz.xyz", "table", "a.csv", "a.ecsv.gz", ".ecsv.txt"])
+def test_other_endings_are_refused(tmp_path, name):
+    with pytest.raises(FileContentError, match=r"must end in \.ecsv, or for a FITS table in one of \.fits, \.fit, \.fts, \.fits\.gz"):
+        write_table(TABLE, tmp_path / name)
+    assert os.listdir(tmp_path) == []
+
+
+def test_a_folder_is_refused(tmp_path):
+    with pytest.raises(FileContentError, match=r"this is a folder; give the name of a file in it, such as .*table\.ecsv"):
+        write_table(TABLE, tmp_path)
+
+
+def test_a_packed_fits_table(tmp_path):
+    path = write_table(TABLE, tmp_path / "a.fits.gz")
+    assert path.read_bytes()[:2] == b"\x1f\x8b"
+    assert np.asarray(read_table(path)["x"]).tolist() == [1.0, 2.0]

@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 from whitefringe.errors import InputError, UnitsError
 from whitefringe.parameters import parameters_of
 from whitefringe.results import Measured
-from whitefringe.sky.delay_lines import CAUTION, PASSES, DelayLine, carriages
+from whitefringe.sky.delay_lines import CAUTION, PASSES, TRACK_COLUMNS, DelayLine, carriages
 from whitefringe.sky.windows import positions_text, windows, windows_text
 
 from .. import contracts
@@ -248,11 +248,16 @@ REFUSED = [
     (change(rest=20 * u.m), InputError, "rest must be from 0 to below the stroke of 20 m; got 20.0 m: a carriage works from its rest"),
     (change(medium=1.0003, wavelength=1 * u.um), InputError, r"medium of the delay line of Weir must have group_index\(wavelength\)"),
     (change(medium=Glass()), InputError, r"medium of the delay line of Weir needs a wavelength, for example wavelength=1\.65"),
-    (change(medium=Glass(), wavelength=1.0), UnitsError, "wavelength must carry a unit"),
+    (change(medium=Glass(), wavelength=1.0), UnitsError, "wavelength of the delay line of Weir must carry a unit"),
     (change(medium=NoIndex(), wavelength=1 * u.um), InputError, r"has a group index of 0\.9 at 1\.0 um; expected 1 to 4"),
     (plan(table=[1, 2]), InputError, "track must be an astropy table; got list; sky.track gives them all"),
     (plan(table=track(1.0)["target", "time", "opd"]), InputError, "track has no column baseline, opd_uncertainty, opd_rate, altitude"),
     (plan(table=track(1.0)[:0]), InputError, "track has no rows; give at least one target"),
+    (change(passes="2"), InputError, "passes must be 2 or 4 .* got '2'"),
+    (change(passes=np.array([2])), InputError, "passes must be 2 or 4"),
+    (change(wavelength=1.65), UnitsError, "wavelength of the delay line of Weir must carry a unit"),
+    (lambda: carriages(track(1.0), None), InputError, r"lines must be a sequence of sky\.DelayLine, one for each station; got None"),
+    (lambda: carriages(track(1.0), lines()[0]), InputError, "baseline 'Kiln-Weir' lacks a delay line: lines are given for Kiln; add"),
     (plan(pair=["Kiln"]), InputError, r"lines must be a sequence of sky\.DelayLine, one for each station"),
     (plan(pair=lines(["Kiln", "Kiln", "Weir"])), InputError, "station 'Kiln' has more than one delay line; give one line for each"),
     (plan(pair=lines(["Kiln", "Tarn"])), InputError, "baseline 'Kiln-Weir' lacks a delay line: lines are given for Kiln, Tarn; add"),
@@ -276,3 +281,30 @@ def test_columns_of_the_wrong_unit_are_refused(name, unit):
     wrong[name] = [1.0] * unit
     with pytest.raises(UnitsError, match=f"column {name} must be convertible to .*; got {unit}"):
         carriages(wrong, lines())
+
+
+@pytest.mark.parametrize("passes", [2.0, np.int64(2), np.float64(4.0)])
+def test_passes_may_be_any_whole_number(passes):
+    line = DelayLine(**LINE | {"passes": passes})
+    assert (line.passes, type(line.passes)) == (int(passes), int)
+
+
+class Stretched(Glass):
+    """A medium that is used outside its range."""
+
+    def flags(self, wavelength):
+        return (f"glass extrapolated at {wavelength}",)
+
+
+def test_what_a_medium_extrapolates_is_noted():
+    pair = lines(medium=Stretched(), wavelength=3 * u.um)
+    flown = track([1.0, 2.0])
+    flown.meta["NOTE1"] = "a note of the track"
+    plan = carriages(flown, pair)
+    notes = [plan.meta[f"NOTE{k}"] for k in (1, 2, 3)]
+    assert notes == ["a note of the track", *(f"delay line of {name}: glass extrapolated at 3.0 um" for name in ("Kiln", "Weir"))]
+    assert flown.meta == {"NOTE1": "a note of the track"}
+    assert carriages(plan[TRACK_COLUMNS], pair).meta == plan.meta
+    for text in (positions_text(plan), windows_text(windows(plan))):
+        assert text.splitlines()[1:] == [f"note: {words}" for words in notes[1:]]
+    assert not any(key.startswith("NOTE") for key in carriages(track(1.0), lines(medium=Glass(), wavelength=1 * u.um)).meta)

@@ -6,7 +6,7 @@ import astropy.units as u
 import erfa
 import numpy as np
 import pytest
-from astropy.coordinates import EarthLocation
+from astropy.coordinates import EarthLocation, SkyCoord
 from astropy.table import QTable
 from astropy.time import Time
 from hypothesis import given, settings
@@ -38,6 +38,7 @@ def star(name="A", ra=150, dec=25, **more):
 
 
 LOW = star("low", 60, -70)
+PLACES = SkyCoord(ra=[60, 150] * u.deg, dec=[25, 25] * u.deg)
 
 
 def test_swapping_the_stations_changes_the_sign():
@@ -258,7 +259,17 @@ def test_a_row_in_words():
         ({"targets": "A"}, "a target must be one of Star, FixedDirection, LampTarget; got str"),
         ({"targets": [star(), 3]}, "a target must be one of Star, FixedDirection, LampTarget; got int"),
         ({"targets": 3}, "a target must be one of Star, FixedDirection, LampTarget; got int"),
-        ({"targets": []}, "no targets: give at least one Star, FixedDirection or LampTarget"),
+        ({"targets": []}, "no targets: targets must be one or more of Star, FixedDirection, LampTarget; give at least one"),
+        ({"targets": [PLACES[0]]}, r"got a SkyCoord: give each place a name, as in \[Star\(name=f.target \{k\}., coordinates=place\)"),
+        ({"targets": PLACES}, "got a SkyCoord: give each place a name"),
+        ({"baselines": ["Kiln-Weir"]}, r"baselines must be one or more of the array's, for example array.baseline\(.*\); got 'Kiln-Weir'"),
+        ({"baselines": []}, "baselines must be one or more of the array's, .*; got none"),
+        ({"baselines": 3}, "baselines must be one or more of the array's, .*; got 3"),
+        (
+            {"times": Time(1e12, format="jd", scale="tdb")},
+            r"times must lie in the years 1000 to 3000; got Julian dates 1e\+12: check their",
+        ),
+        ({"times": Time([2e6, 2451545], format="jd")}, "got Julian dates 2000000 to 2451545"),
         ({"times": "2026-03-01"}, "times must be an astropy Time"),
         ({"times": NIGHT[:0]}, "times must be one time or a row of times"),
         ({"orientation": 0.1}, r"orientation must be an EarthOrientation, for example EarthOrientation.packaged\(\); got float"),
@@ -298,3 +309,51 @@ def test_a_target_below_the_horizon_is_flagged_in_its_rows():
     assert np.all(south["altitude"] < 0 * u.deg)
     assert not np.any(south["above_horizon"])
     assert np.all(lamp["above_horizon"])
+
+
+def test_one_place_is_a_star_named_target():
+    table = track(larkmoor(), PLACES[1], NIGHT[:2], FIXED)
+    assert set(table["target"]) == {"target"}
+    assert np.array_equal(table["opd"], track(larkmoor(), star(), NIGHT[:2], FIXED)["opd"])
+
+
+def test_targets_may_come_in_anything_that_lists_them():
+    stars = [star("A"), LOW]
+    for several in (tuple(stars), iter(stars), np.array(stars, dtype=object), {"one": stars[0], "two": LOW}.values()):
+        assert path_differences(larkmoor(), several, NIGHT[0], FIXED).targets == ("A", "low")
+
+
+def test_one_baseline_stands_for_itself():
+    array = larkmoor()
+    result = path_differences(array, star(), NIGHT[0], FIXED, baselines=array.baseline("Weir", "Kiln"))
+    assert [baseline.name for baseline in result.baselines] == ["Weir-Kiln"]
+
+
+@pytest.mark.parametrize("year", [1001, 1850, 2150, 2999])
+def test_years_outside_the_ephemeris_are_noted_and_give_no_warning(year):
+    times = Time(2451545 + (year - 2000) * 365.25, format="jd", scale="tdb")
+    with warnings.catch_warnings():
+        warnings.simplefilter("error")
+        table = track(larkmoor(), star(), times)
+    notes = [words for key, words in table.meta.items() if key.startswith("NOTE")]
+    assert any("1 of 1 times are outside the years 1900 to 2100 of the solar-system ephemeris" in words for words in notes)
+    assert not any("ephemeris" in words for words in path_differences(larkmoor(), star(), NIGHT).orientation.notes)
+
+
+@pytest.mark.parametrize(
+    ("row", "kind", "message"),
+    [
+        ({}, InputError, r"row must be a row of a table from track, with the columns opd, opd_uncertainty, .*; got \{\}"),
+        (None, InputError, "row must be a row of a table from track"),
+        (
+            {"opd": 1} | {f"opd_uncertainty{name}": 1 * u.um for name in ("", *(f"_{k}" for k in PARTS))},
+            UnitsError,
+            "opd must carry a unit",
+        ),
+        (track(larkmoor(), star(), NIGHT[:2], FIXED), InputError, r"opd must be one number; got an array of shape \(6,\)"),
+    ],
+    ids=["empty", "none", "no unit", "table"],
+)
+def test_words_need_a_row(row, kind, message):
+    with pytest.raises(kind, match=message):
+        opd_text(row)

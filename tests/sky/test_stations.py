@@ -17,6 +17,10 @@ def station(name, east=0.0, north=0.0, up=0.0, uncertainty=0 * u.m):
     return Station(name=name, east=east * u.m, north=north * u.m, up=up * u.m, uncertainty=uncertainty)
 
 
+def geodetic(latitude, height=1000.0):
+    return EarthLocation.from_geodetic(lon=-15 * u.deg, lat=latitude * u.deg, height=height * u.m)
+
+
 def larkmoor(**changes):
     stations = [station("Kiln"), station("Weir", 80, 60, 0.5), station("Tarn", -45, 120, -2)]
     return Array(**{"name": "Larkmoor", "location": PLACE, "stations": stations} | changes)
@@ -107,6 +111,23 @@ def test_stations_that_cannot_be_used(change, kind, message):
         ({"stations": [station("Kiln"), station("Weir"), station("Kiln")]}, "station names must differ; twice or more: Kiln"),
         ({"stations": [station("Kiln")]}, "an array needs at least two stations; got 1"),
         ({"stations": ["Kiln", "Weir"]}, "stations must be Station objects; got str"),
+        ({"stations": None}, "stations must be a sequence of two or more Station objects; got None"),
+        ({"stations": "Kiln"}, "stations must be a sequence of two or more Station objects; got 'Kiln'"),
+        (
+            {"location": EarthLocation.from_geocentric(np.nan, 0, 0, unit=u.m)},
+            r"location must be finite; got \(nan, .*: give longitude, latitude and height as numbers",
+        ),
+        ({"location": geodetic(35, 10_001)}, "height of the location must lie between -12000 and 10000 m over the ellipsoid; got 10001 m"),
+        ({"location": geodetic(35, -12_001)}, "height of the location .*; got -12001 m"),
+        ({"location": EarthLocation.from_geocentric(0, 0, 0, unit=u.m)}, r"height of the location .*; got -6\.35675e\+06 m"),
+        (
+            {"stations": [station("Kiln"), station("Weir", 101e3)]},
+            "station 'Weir' stands 101 km from the array's location, but at most 100 km are allowed; give coordinates from the array's",
+        ),
+        (
+            {"stations": [station("Kiln"), Station.geocentric(name="Weir", x=80 * u.m, y=60 * u.m, z=0 * u.m)]},
+            "station 'Weir' stands 6372.* km from the array's location",
+        ),
         ({"location": "Larkmoor"}, "location must be one astropy EarthLocation; got 'Larkmoor'"),
     ],
 )

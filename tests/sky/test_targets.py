@@ -138,6 +138,17 @@ def test_a_lamp_has_no_direction():
         ({"pm_dec": 3 * u.mas / u.yr}, InputError, "star 'A' has a proper motion but no epoch; give obstime"),
         ({"pm_dec": 3 * u.mas, "epoch": EPOCH}, UnitsError, "pm_dec must be convertible to rad / s"),
         ({"parallax": 0 * u.mas}, InputError, r"parallax of star 'A' must be above zero; got 0\.0 mas; leave it out"),
+        ({"parallax": [1, 2] * u.mas}, InputError, r"parallax of star 'A' must be one number; got an array of shape \(2,\)"),
+        ({"pm_dec": [1, 2] * u.mas / u.yr, "epoch": EPOCH}, InputError, "pm_dec of star 'A' must be one number"),
+        ({"radial_velocity": [1, 2] * u.km / u.s}, InputError, "radial_velocity of star 'A' must be one number"),
+        ({"parallax": np.nan * u.mas}, InputError, "parallax must be finite"),
+        (
+            {"proper_motion_uncertainty": 1 * u.mas / u.yr},
+            InputError,
+            "star 'A' has a proper_motion_uncertainty but no epoch; give obstime with its coordinates",
+        ),
+        ({"name": None}, InputError, "a star needs a name; got None: give it as text that is not blank"),
+        ({"name": 5}, InputError, "a star needs a name; got 5"),
         ({"parallax": 3 * u.pc}, UnitsError, "parallax must be convertible to arcsec"),
         ({"radial_velocity": 3 * u.km}, UnitsError, "radial_velocity must be convertible to m / s"),
         ({"uncertainty": 1 * u.m}, UnitsError, "uncertainty of star 'A' must be convertible to rad"),
@@ -162,9 +173,17 @@ def test_coordinates_that_cannot_be_used():
         ({"altitude": 100 * u.deg}, InputError, r"altitude of direction 'mast' must lie between -90 and 90 deg; got 100\.0 deg"),
         ({"azimuth": 30}, UnitsError, "azimuth of direction 'mast' must carry a unit"),
         ({"azimuth": [30, 40] * u.deg}, InputError, r"azimuth of direction 'mast' must be one number; got .* \(2,\)"),
+        ({"name": ""}, InputError, "a direction needs a name; got ''"),
         ({"uncertainty": -1 * u.mas}, InputError, "uncertainty of direction 'mast' must not be negative"),
     ],
 )
 def test_fixed_directions_that_cannot_be_used(change, kind, message):
     with pytest.raises(kind, match=message):
         FixedDirection(**{"name": "mast", "azimuth": 30 * u.deg, "altitude": 40 * u.deg} | change)
+
+
+def test_lamps_and_stars_need_a_name():
+    with pytest.raises(InputError, match="a lamp needs a name; got 5"):
+        LampTarget(name=5)
+    with pytest.raises(InputError, match="a star needs a name; got ''"):
+        Star(name="", coordinates=SkyCoord(ra=1 * u.deg, dec=2 * u.deg))

@@ -216,3 +216,5 @@ def test_what_a_field_of_view_refuses():
         field_of_view(LIGHT, 0 * u.m)
     with pytest.raises(InputError, match="definition must be one of bandwidth"):
         field_of_view(LIGHT, 100 * u.m, "longest")
+    with pytest.raises(InputError, match=r"light must be a Spectrum, as spectra\.detected gives it; got 5"):
+        field_of_view(5, 100 * u.m)

@@ -244,14 +244,19 @@ def _line(error: BaseException) -> str:
 
 
 def write_table(table: Table, path: str | Path, *, overwrite: bool = False) -> Path:
-    """Write a table as FITS (a name that ends so) or else as ECSV, whole or not at all: first beside its place, then moved there.
+    """Write a table as FITS or ECSV, as its name ends, whole or not at all: first beside its place, then moved there.
 
     Raises
     ------
     FileContentError
-        The file exists and `overwrite` is false, or there is no folder to write to.
+        The name is a folder's, or has another ending than ``.ecsv`` and those of FITS; the file exists and `overwrite` is false; or there
+        is no folder to write to.
     """
     path = Path(path)
+    if path.is_dir():
+        raise FileContentError(f"{path}: this is a folder; give the name of a file in it, such as {path / 'table.ecsv'}")
+    if not path.name.lower().endswith((".ecsv", *FITS_ENDINGS)):
+        raise FileContentError(f"{path}: the name must end in .ecsv, or for a FITS table in one of {', '.join(FITS_ENDINGS)}")
     if path.exists() and not overwrite:
         raise FileContentError(f"{path}: the file exists; say overwrite=True to replace it")
     if not path.parent.is_dir():

@@ -17,6 +17,9 @@ from ..units import FloatArray, as_si
 LIMITS = ("below the horizon limit", "out of stroke", "too fast")
 """What a row can fail, in the order of the margins."""
 
+LINE_NOTE = "delay line of "
+"""How a note on a delay line begins in the table's ``meta``."""
+
 ROW_COLUMNS = (
     *("target", "baseline", "time", "altitude", "station_1", "station_2", "carriage_1", "carriage_2", "speed_1", "speed_2"),
     *("moving", "line_difference", "margin_altitude", "margin_stroke", "margin_speed"),

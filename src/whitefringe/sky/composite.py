@@ -13,7 +13,7 @@ from astropy import units
 from ..errors import InputError
 from ..parameters import parameter
 from ..spectra._shape import number
-from ..units import FloatArray, as_si, read_only
+from ..units import FloatArray, as_si, frozen_quantities, read_only
 from ._object import ComplexArray, ObjectShape, SkyObject, angle_si, check_object
 from .images import Picture
 from .visibility import DarkenedDisc, GaussianDisc, Point, PowerLawDisc, Ring, UniformDisc
@@ -65,6 +65,7 @@ class Binary(ObjectShape):
     position_angle: units.Quantity = parameter("position angle (north to east)", units.deg, low=0.0, high=360.0, step=1.0, start=45.0)
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
         check_object(self.first, "first")
         check_object(self.second, "second")
         object.__setattr__(self, "flux_ratio", number(self.flux_ratio, "flux_ratio", low=0.0))

@@ -5,7 +5,7 @@ Nothing here moves anything; `CAUTION` says so wherever positions are shown.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import permutations
@@ -18,8 +18,8 @@ from astropy.table import QTable
 from ..errors import InputError
 from ..parameters import parameter
 from ..results import Measured
-from ..units import SPEED_OF_LIGHT, FloatArray, as_si, one_frequency_si, positive_si
-from ._carriage_rows import CarriageRows, column_si, need_columns
+from ..units import SPEED_OF_LIGHT, FloatArray, as_si, frozen_quantities, one_frequency_si, positive_si
+from ._carriage_rows import LINE_NOTE, CarriageRows, column_si, need_columns
 
 CAUTION = (
     "Planning only: whitefringe moves nothing and knows no interlock; travel limits, safe speeds and who may stand near a moving "
@@ -67,7 +67,7 @@ class DelayLine:
     medium : GroupMedium, optional
         What fills the line; vacuum by default.
     wavelength : Quantity [vacuum wavelength or frequency], optional
-        Needed with a `medium`; vacuum needs none.
+        Needed with a `medium`; vacuum needs none, but what is given is checked.
 
     Raises
     ------
@@ -100,8 +100,13 @@ class DelayLine:
     def __post_init__(self) -> None:
         if not isinstance(self.station, str) or not self.station.strip():
             raise InputError(f"station must be the name of a station, for example 'Weir'; got {self.station!r}")
-        if isinstance(self.passes, bool) or self.passes not in PASSES:
+        frozen_quantities(self)
+        # an equality, so that 2.0 and numpy's 2 are 2; an array is in no tuple of numbers
+        if isinstance(self.passes, bool) or not np.isscalar(self.passes) or self.passes not in PASSES:
             raise InputError(f"delay line of {self.station}: passes must be 2 or 4 (there and back, once or twice); got {self.passes!r}")
+        object.__setattr__(self, "passes", int(self.passes))
+        if self.wavelength is not None:
+            one_frequency_si(self.wavelength, f"wavelength of the delay line of {self.station}")
         stroke, _, _, rest, _ = self._numbers_si
         if not 0 <= rest < stroke:
             raise InputError(
@@ -126,16 +131,22 @@ class DelayLine:
         """Group index of what fills the line, 1 for vacuum."""
         if self.medium is None:
             return 1.0
-        where = f"medium of the delay line of {self.station}"
+        where, of = f"medium of the delay line of {self.station}", f"of the delay line of {self.station}"
         if not callable(getattr(self.medium, "group_index", None)):
             raise InputError(f"{where} must have group_index(wavelength), as the models of air in whitefringe.media; got {self.medium!r}")
         if self.wavelength is None:
             raise InputError(f"{where} needs a wavelength, for example wavelength=1.65 * u.um: its group index depends on it")
-        found = self.medium.group_index(SPEED_OF_LIGHT / one_frequency_si(self.wavelength, "wavelength") * u.m)
+        found = self.medium.group_index(SPEED_OF_LIGHT / one_frequency_si(self.wavelength, f"wavelength {of}") * u.m)
         index = float(u.Quantity(found.value if isinstance(found, Measured) else found).to_value(u.dimensionless_unscaled))
         if not 1 <= index <= GREATEST_INDEX:
             raise InputError(f"{where} has a group index of {index:g} at {self.wavelength}; expected 1 to {GREATEST_INDEX:g}")
         return index
+
+    @cached_property
+    def flags(self) -> tuple[str, ...]:
+        """What its medium extrapolates at the wavelength, in sentences."""
+        said = getattr(self.medium, "flags", None)
+        return tuple(f"{LINE_NOTE}{self.station}: {words}" for words in said(self.wavelength)) if callable(said) else ()
 
     @property
     def path_per_metre(self) -> float:
@@ -160,10 +171,10 @@ def carriages(track: Any, lines: Sequence[DelayLine], least_altitude: u.Quantity
     track : QTable or Table
         A row per target, baseline and time, as `sky.track` gives it: target, baseline (``"Kiln-Weir"``), time, opd [length],
         opd_uncertainty [length], opd_rate [speed], altitude [angle; not a number for a lamp].
-    lines : sequence of DelayLine
+    lines : DelayLine or sequence of DelayLine
         One for each station in the track.
     least_altitude : Quantity [angle]
-        Lowest altitude at which the telescopes observe.
+        Lowest altitude at which the telescopes observe, 0 to 90 deg.
 
     Returns
     -------
@@ -171,7 +182,7 @@ def carriages(track: Any, lines: Sequence[DelayLine], least_altitude: u.Quantity
         The track's columns and: station_1, station_2; carriage_1, carriage_2 [m]; speed_1, speed_2 [mm/s], positive towards the
         end of the stroke; moving, the station whose carriage works; carriage_uncertainty [m], of that one; line_difference [m], D;
         margin_altitude [deg], margin_stroke [m], margin_speed [mm/s], what is left up to each limit (negative: beyond it);
-        observable; reason, empty or why not.
+        observable; reason, empty or why not. What the media of the lines extrapolate is added to the track's ``meta`` as NOTE1, ...
 
     Raises
     ------
@@ -200,9 +211,7 @@ def carriages(track: Any, lines: Sequence[DelayLine], least_altitude: u.Quantity
     2.5 m -2.0 mm / s out of stroke: Kiln needs 2.500 m, stroke 2 m
     """
     need_columns(track, TRACK_COLUMNS, "track", "sky.track gives them all")
-    least = as_si(least_altitude, u.deg, "least_altitude", "deg")
-    if np.ndim(least) != 0 or not 0 <= least <= 90:
-        raise InputError(f"least_altitude must be one angle from 0 to 90 deg; got {least_altitude}")
+    least, lines = least_altitude_deg(least_altitude), as_lines(lines)
     names, which = np.unique(np.asarray(track["baseline"]).astype(str), return_inverse=True)
     pairs = _pairs(names.tolist(), lines)
     numbers = np.array([[line._numbers_si for line in pair] for pair in pairs])[which]
@@ -231,7 +240,32 @@ def carriages(track: Any, lines: Sequence[DelayLine], least_altitude: u.Quantity
     judged = CarriageRows.of(table)
     table["observable"] = judged.inside
     table["reason"] = [judged.reason(row, row + 1) for row in range(len(table))]
+    _note(table.meta, dict.fromkeys(flag for pair in pairs for line in pair for flag in line.flags))
     return table
+
+
+def _note(meta: Any, flags: Iterable[str]) -> None:
+    """Add notes that are not there yet, numbered on from those that are."""
+    count = sum(key.startswith("NOTE") for key in meta)
+    meta.update({f"NOTE{k}": flag for k, flag in enumerate((flag for flag in flags if flag not in meta.values()), count + 1)})
+
+
+def least_altitude_deg(value: Any) -> float:
+    """Return the least altitude [deg], or say what it must be."""
+    least = as_si(value, u.deg, "least_altitude", "deg")
+    if np.ndim(least) != 0 or not 0 <= least <= 90:
+        raise InputError(f"least_altitude must be one angle from 0 to 90 deg; got {value}")
+    return float(least)
+
+
+def as_lines(lines: Any) -> tuple[DelayLine, ...]:
+    """Return one delay line or several as a tuple."""
+    several = isinstance(lines, Iterable) and not isinstance(lines, str)
+    chosen = tuple(lines) if several else (lines,)
+    for line in chosen:
+        if not isinstance(line, DelayLine):
+            raise InputError(f"lines must be a sequence of sky.DelayLine, one for each station; got {line!r}")
+    return chosen
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -272,8 +306,6 @@ def place_si(opd: FloatArray, rate: FloatArray, numbers: FloatArray) -> Placed:
 
 def _pairs(baselines: Sequence[str], lines: Sequence[DelayLine]) -> list[tuple[DelayLine, DelayLine]]:
     """Return the two delay lines of every baseline."""
-    if not all(isinstance(line, DelayLine) for line in lines):
-        raise InputError("lines must be a sequence of sky.DelayLine, one for each station")
     stations = [line.station for line in lines]
     double = next((name for name in stations if stations.count(name) > 1), None)
     if double is not None:

@@ -19,9 +19,9 @@ from ..errors import InputError
 from ._closed_form import HourAngleDelays, hour_angle_delays, hour_angle_delays_si
 from ._geometry import directions
 from ._path_differences import PathDifferences
-from .orientation import STATUSES, EarthOrientation
-from .stations import Array, Baseline
-from .targets import TARGET_KINDS, Star
+from .orientation import STATUSES, EarthOrientation, one_si
+from .stations import Array, Baseline, as_baselines
+from .targets import Star, as_targets
 
 __all__ = [
     "HourAngleDelays",
@@ -75,12 +75,13 @@ def path_differences(
     Parameters
     ----------
     array : Array
-    targets : Star, FixedDirection, LampTarget, or a sequence of them
+    targets : Star, FixedDirection, LampTarget, or any number of them
+        One SkyCoord stands for a star named ``target``.
     times : Time
         One time or a row of times, in any scale.
     orientation : EarthOrientation, optional
         The packaged table by default. A UT1-UTC set on `times` is not used.
-    baselines : sequence of Baseline, optional
+    baselines : Baseline or sequence of Baseline, optional
         All of the array's by default.
 
     Returns
@@ -91,14 +92,17 @@ def path_differences(
     Raises
     ------
     InputError
-        No targets, something that is not a target or an Earth orientation, or times that are not a row of times.
+        No targets or baselines, something that is not a target, a baseline or an Earth orientation, or times that are not a row of times
+        in the years 1000 to 3000.
 
     Notes
     -----
     Refraction is left out on purpose: parallel layers of air bend the light of both arms alike, and the path difference is that of the
     direction above the air; air between stations of different height counts as part of the arms. Rates take the Earth's axis along the
     ground's pole and hold the observed place still; polar motion and aberration, which they neglect, make up some 3e-6 of the rate.
-    Celestial pole offsets (0.3 mas) are not applied; they are part of the pole's uncertainty.
+    Celestial pole offsets (0.3 mas) are not applied; they are part of the pole's uncertainty. Outside the years 1900 to 2100, where
+    astropy's built-in ephemeris of the Earth is extrapolated, the notes of the orientation say so. While it runs, astropy's Earth
+    orientation, ephemeris and warning filters are set for the whole process: other threads that use astropy see them.
 
     References
     ----------
@@ -121,8 +125,8 @@ def path_differences(
     """
     if not isinstance(array, Array):
         raise InputError(f"array must be an Array; got {type(array).__name__}")
-    chosen = _targets(targets)
-    pairs = array.baselines if baselines is None else tuple(baselines)
+    chosen = as_targets(targets)
+    pairs = as_baselines(array, baselines)
     used = EarthOrientation.packaged() if orientation is None else orientation
     if not isinstance(used, EarthOrientation):
         raise InputError(f"orientation must be an EarthOrientation, for example EarthOrientation.packaged(); got {type(used).__name__}")
@@ -142,18 +146,6 @@ def path_differences(
         _values=values,
         _places=places,
     )
-
-
-def _targets(targets: Any) -> tuple[Any, ...]:
-    several = isinstance(targets, Sequence) and not isinstance(targets, str)
-    chosen = tuple(targets) if several else (targets,)
-    if not chosen:
-        raise InputError("no targets: give at least one Star, FixedDirection or LampTarget")
-    for target in chosen:
-        if not isinstance(target, TARGET_KINDS):
-            kinds = ", ".join(kind.__name__ for kind in TARGET_KINDS)
-            raise InputError(f"a target must be one of {kinds}; got {type(target).__name__}")
-    return chosen
 
 
 def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation | None = None) -> QTable:
@@ -181,7 +173,8 @@ def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation
 
     Notes
     -----
-    Can be written to ECSV and FITS by astropy and read back (FITS with ``astropy_native=True`` for the times).
+    Can be written to ECSV and FITS by astropy and read back (FITS with ``astropy_native=True`` for the times). While it runs, astropy's
+    Earth orientation is set for the whole process, as for `path_differences`.
 
     Examples
     --------
@@ -251,6 +244,11 @@ def opd_text(row: Any) -> str:
     str
         The pole is listed where it is at least a tenth of the whole.
 
+    Raises
+    ------
+    InputError, UnitsError
+        Not a row of a track: a column is missing, or is not one length.
+
     Examples
     --------
     >>> parts = {"ut1": 14.2, "target": 9.1, "stations": 6.4, "pole": 0.4}
@@ -258,11 +256,14 @@ def opd_text(row: Any) -> str:
     >>> print(opd_text(row | {"opd": 12.345678 * u.m, "opd_uncertainty": 18.04 * u.um}))
     12.345678 m ± 18 um (UT1 14, target 9, stations 6)
     """
-    total, *parts = (
-        float(u.Quantity(row[f"opd_uncertainty{name}"]).to_value(u.um)) for name in ("", "_ut1", "_target", "_stations", "_pole")
-    )
+    columns = ("opd", *(f"opd_uncertainty{name}" for name in ("", "_ut1", "_target", "_stations", "_pole")))
+    try:
+        given = {name: row[name] for name in columns}
+    except (KeyError, TypeError, IndexError, ValueError):
+        raise InputError(f"row must be a row of a table from track, with the columns {', '.join(columns)}; got {row!r}") from None
+    opd, total, *parts = (one_si(value, u.m if name == "opd" else u.um, name) for name, value in given.items())
     named = dict(zip(("UT1", "target", "stations", "pole"), parts, strict=True))
     if named["pole"] < 0.1 * total or total == 0:
         del named["pole"]
     causes = ", ".join(f"{name} {value:.0f}" for name, value in named.items())
-    return f"{u.Quantity(row['opd']).to_value(u.m):.6f} m ± {total:.0f} um ({causes})"
+    return f"{opd:.6f} m ± {total:.0f} um ({causes})"

@@ -10,7 +10,7 @@ import numpy as np
 from astropy import units
 
 from ..errors import InputError
-from ..units import FloatArray, positive_si, read_only
+from ..units import FloatArray, frozen_quantities, positive_si, read_only
 from ._object import ComplexArray, ObjectShape
 
 _ENTRIES = 2**20
@@ -58,6 +58,7 @@ class Picture(ObjectShape):
     pixel: units.Quantity
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
         try:
             image = read_only(self.image)
         except (TypeError, ValueError):

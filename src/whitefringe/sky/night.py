@@ -70,13 +70,7 @@ def night_times(location: EarthLocation, date: Any, sun_below: u.Quantity = -12 
     """
     if not isinstance(location, EarthLocation) or not location.isscalar:
         raise InputError(f"location must be one astropy EarthLocation; got {type(location).__name__}")
-    limit = as_si(sun_below, u.deg, "sun_below", "deg")
-    if np.ndim(limit) != 0 or not -90 <= limit <= 0:
-        raise InputError(f"sun_below must be one angle from -90 to 0 deg, for example -12 deg; got {sun_below}")
-    longest = positive_si(step, u.s, "step", "min")
-    if longest < 1:
-        raise InputError(f"step must be at least 1 s; got {step}")
-    day = _calendar_date(date)
+    limit, longest, day = sun_limit_deg(sun_below), step_si(step), calendar_date(date)
     longitude, latitude = (float(angle.to_value(u.rad)) for angle in (location.lon, location.lat))
     # scale TAI has days of equal length, so that a date far ahead needs no leap seconds
     midnight = float(Time(day.isoformat(), scale="tai").jd) + 1 - longitude / (2 * np.pi)
@@ -131,7 +125,24 @@ def sun_altitude_si(day: float, fraction: FloatArray, longitude: float, latitude
     return np.arcsin(np.sin(latitude) * z + np.cos(latitude) * np.hypot(x, y) * np.cos(hour_angle))
 
 
-def _calendar_date(date: Any) -> dt.date:
+def sun_limit_deg(sun_below: Any) -> float:
+    """Return the sun's limit [deg], or say what it must be."""
+    limit = as_si(sun_below, u.deg, "sun_below", "deg")
+    if np.ndim(limit) != 0 or not -90 <= limit <= 0:
+        raise InputError(f"sun_below must be one angle from -90 to 0 deg, for example -12 deg; got {sun_below}")
+    return float(limit)
+
+
+def step_si(step: Any) -> float:
+    """Return the step [s], or say what it must be."""
+    longest = positive_si(step, u.s, "step", "min")
+    if longest < 1:
+        raise InputError(f"step must be at least 1 s; got {step}")
+    return longest
+
+
+def calendar_date(date: Any) -> dt.date:
+    """Return the date of an evening, or say what it must be."""
     try:
         # a datetime is refused: its clock does not say which evening is meant
         day = date if isinstance(date, dt.date) and not isinstance(date, dt.datetime) else dt.date.fromisoformat(date)

@@ -76,8 +76,7 @@ def band_visibility(obj: SkyObject, u: Any, v: Any, light: Spectrum) -> ComplexA
     [1.     0.4598]
     """
     check_object(obj, "obj")
-    if not isinstance(light, Spectrum):
-        raise InputError(f"light must be a Spectrum, as spectra.detected gives it; got {light!r}")
+    _check_light(light)
     east, north = np.asarray(as_si(u, units.m, "u")), np.asarray(as_si(v, units.m, "v"))
     together(("u", "v"), east, north)
     return band_visibility_si(obj, east, north, light)
@@ -228,7 +227,7 @@ def field_of_view(light: Spectrum, baseline: Any, definition: str = DEFAULT_DEFI
     Raises
     ------
     UnitsError, InputError
-        No length, or not above zero; unknown definition.
+        Not a Spectrum; no length, or not above zero; unknown definition.
     UndefinedWidthError
         The definition has no meaning for this light.
 
@@ -250,12 +249,18 @@ def field_of_view(light: Spectrum, baseline: Any, definition: str = DEFAULT_DEFI
     >>> print(field_of_view(light, 100 * u.m).text)
     18.5638 mas
     """
+    _check_light(light)
     length = coherence_length(light, definition)
     metres = positive_si(baseline, units.m, "baseline")
     angle = (length.to_value(units.m) / metres * units.rad).to(units.mas)
     counted = "angle from the centre" if definition in _FROM_ZERO else "full angle"
     words = f"{counted} along the baseline: coherence length over baseline; {length.definition}"
     return Measured(value=angle, definition=words, method=length.method, citation=length.citation)
+
+
+def _check_light(light: Any) -> None:
+    if not isinstance(light, Spectrum):
+        raise InputError(f"light must be a Spectrum, as spectra.detected gives it; got {light!r}")
 
 
 __all__ = ["band_visibility", "closure_phase", "field_of_view"]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from functools import cached_property
 from types import MappingProxyType
@@ -13,16 +13,34 @@ from astropy.table import QTable, vstack
 from astropy.time import Time
 
 from ..errors import InputError
+from ..units import frozen_quantities
 from ._moved import moved_star, moved_station
-from ._object import SkyObject
-from .delay_lines import DelayLine, carriages
+from ._object import SkyObject, check_object
+from .delay_lines import DelayLine, as_lines, carriages, least_altitude_deg
 from .delays import track
-from .night import night_times
+from .night import calendar_date, night_times, step_si, sun_limit_deg
 from .orientation import EarthOrientation
 from .stations import Array, Baseline
-from .targets import TARGET_KINDS
+from .targets import as_targets
 from .visibility import Point
 from .windows import windows
+
+LONGEST_STEP = 3600.0
+"""Longest step [s] of a night's tables: `windows` joins rows that are no further apart, and the sky turns by 15 deg in it."""
+
+
+def night_step_si(step: Any) -> float:
+    """Return the step of a night's tables [s], or say what it must be."""
+    longest = step_si(step)
+    if longest > LONGEST_STEP * (1 + 1e-12):
+        raise InputError(f"step must be at most {LONGEST_STEP / 3600:g} h, to follow the sky; got {step}; for example 5 min")
+    return longest
+
+
+NIGHT_CHECKS: Mapping[str, Callable[[Any], Any]] = MappingProxyType(
+    {"date": calendar_date, "least_altitude": least_altitude_deg, "sun_below": sun_limit_deg, "step": night_step_si}
+)
+"""What says of each number of a night whether it can be used."""
 
 
 @dataclass(frozen=True, kw_only=True, eq=False)
@@ -32,19 +50,20 @@ class Observation:
     Parameters
     ----------
     array : Array
-    targets : sequence of Star, FixedDirection or LampTarget
+    targets : Star, FixedDirection, LampTarget, or a sequence of them
         Names must differ.
     date : str
         Calendar date at the site on whose evening the night begins, such as ``"2026-12-01"``.
     objects : mapping of str to SkyObject, optional
         What each target looks like, by its name; a point where nothing is said.
-    delay_lines : sequence of DelayLine, optional
+    delay_lines : DelayLine or sequence of DelayLine, optional
         One per station; without them nothing is said of carriages and windows.
     least_altitude : Quantity [angle]
+        0 to 90 deg.
     sun_below : Quantity [angle]
-        Altitude of the sun between which and which the night lasts.
+        Altitude of the sun between which and which the night lasts, -90 to 0 deg.
     step : Quantity [time]
-        Longest step of the tables.
+        Longest step of the tables, 1 s to 1 h.
     orientation : EarthOrientation, optional
         The packaged table by default.
     target, baseline : str, optional
@@ -54,8 +73,9 @@ class Observation:
 
     Raises
     ------
-    InputError
-        No target, a target of the wrong kind or a name twice, an object for a target that is not there.
+    InputError, UnitsError
+        Not an Array; no target, a target of the wrong kind or a name twice, an object for a target that is not there; a date, limit or
+        step out of its range.
     """
 
     array: Array
@@ -72,12 +92,19 @@ class Observation:
     stated: Observation | None = None
 
     def __post_init__(self) -> None:
-        object.__setattr__(self, "targets", tuple(self.targets))
-        object.__setattr__(self, "delay_lines", tuple(self.delay_lines))
+        if not isinstance(self.array, Array):
+            raise InputError(f"array must be an Array; got {type(self.array).__name__}")
+        for field_name, check in NIGHT_CHECKS.items():
+            check(getattr(self, field_name))
+        frozen_quantities(self)
+        object.__setattr__(self, "targets", as_targets(self.targets))
+        object.__setattr__(self, "delay_lines", as_lines(self.delay_lines))
+        if not isinstance(self.objects, Mapping):
+            raise InputError(f"objects must be a mapping of target names to objects; got {self.objects!r}: leave it out for points")
         object.__setattr__(self, "objects", MappingProxyType(dict(self.objects)))
-        names = [str(getattr(target, "name", "")) for target in self.targets]
-        if not names or not all(isinstance(target, TARGET_KINDS) for target in self.targets):
-            raise InputError(f"targets must be one or more of {', '.join(kind.__name__ for kind in TARGET_KINDS)}; got {self.targets!r}")
+        for name, item in self.objects.items():
+            check_object(item, f"the object of target {name!r}")
+        names = [target.name for target in self.targets]
         twice = sorted({name for name in names if names.count(name) > 1})
         if twice:
             raise InputError(f"target names must differ; twice or more: {', '.join(twice)}")
@@ -120,7 +147,7 @@ class Observation:
     @cached_property
     def windows(self) -> QTable | None:
         """When each target can be observed on each baseline, and why not when not; None without delay lines."""
-        return windows(self.table) if self.delay_lines else None
+        return windows(self.table, gap=LONGEST_STEP * u.s) if self.delay_lines else None
 
     def choosing(self, *, target: str = "", baseline: str = "") -> Observation:
         """Return the same night with another target or baseline looked at; the tables, which do not depend on it, are kept."""

@@ -32,6 +32,15 @@ STATUSES = (MEASURED, PREDICTED, BEYOND, BEFORE, GIVEN)
 # astropy's Earth orientation, ephemeris and warnings are one for the whole process; two threads must not set them at once
 _ASTROPY_STATE = RLock()
 
+YEARS = (1000, 3000)
+"""Years in which the precession of the Earth's axis is known well enough to be of use."""
+
+J2000 = 51544.5
+"""Modified Julian Date of 2000-01-01T12:00."""
+
+EPHEMERIS_DAYS = 36525.0
+"""The built-in ephemeris holds for this many days about J2000: the years 1900 to 2100."""
+
 NO_LEAP_SECONDS = "no leap second is assumed after the last one announced"
 
 
@@ -52,6 +61,8 @@ class Orientation:
         The table that was used.
     last_measured : str
         Date of its last measured value, or empty.
+    beyond_ephemeris : int
+        How many of the times lie outside the years 1900 to 2100, for which the Earth's motion about the sun is known well.
     """
 
     ut1_utc: u.Quantity
@@ -64,6 +75,7 @@ class Orientation:
     age: u.Quantity
     source: str
     last_measured: str
+    beyond_ephemeris: int = 0
 
     @property
     def notes(self) -> tuple[str, ...]:
@@ -81,6 +93,11 @@ class Orientation:
         if counts[BEFORE]:
             held = sigma[self.status == BEFORE].max()
             said.append(f"{counts[BEFORE]} of {self.status.size} times are before the table: UT1-UTC is held, to {held:.3g} s (one sigma)")
+        if self.beyond_ephemeris:
+            said.append(
+                f"{self.beyond_ephemeris} of {self.status.size} times are outside the years 1900 to 2100 of the solar-system ephemeris: "
+                "what its error does to aberration and parallax of stars is not in the uncertainties"
+            )
         return tuple(said)
 
 
@@ -206,6 +223,7 @@ class EarthOrientation:
             age=np.maximum(mjd - last, 0) * u.d,
             source=self.source,
             last_measured=_date(last) if self.table is not None else "",
+            beyond_ephemeris=int(np.sum(np.abs(mjd - J2000) > EPHEMERIS_DAYS)),
         )
 
     def table_for(self, times: Time) -> Any:
@@ -236,7 +254,8 @@ class EarthOrientation:
         Notes
         -----
         Inside the block astropy downloads nothing and uses its built-in ephemeris. A UT1-UTC that was set on the caller's `times` is
-        not used: the Earth orientation decides.
+        not used: the Earth orientation decides. astropy's Earth orientation, ephemeris and warning filters are one for the whole process:
+        other threads see them changed until the block ends.
         """
         with quiet():
             clean = as_utc(times, self)
@@ -255,6 +274,7 @@ def quiet() -> Iterator[None]:
     """Keep astropy off the network, and drop its warnings of far dates: the status of the Earth orientation tells of them."""
     with _ASTROPY_STATE, warnings.catch_warnings(), iers.conf.set_temp("auto_download", False):
         warnings.filterwarnings("ignore", message=".*dubious year", category=erfa.ErfaWarning)
+        warnings.filterwarnings("ignore", message='.*"epv00"', category=erfa.ErfaWarning)
         warnings.filterwarnings("ignore", message="leap-second file is expired", category=iers.IERSStaleWarning)
         yield
 
@@ -267,6 +287,7 @@ def as_utc(times: Any, orientation: EarthOrientation | None = None) -> Time:
         raise InputError(f"times must be one time or a row of times; got an array of shape {times.shape}")
     if times.scale == "local":
         raise InputError('times in the scale "local" have no relation to the Earth\'s rotation; give them in UTC')
+    _check_range(times)
     with quiet():
         if times.scale == "ut1":
             used = orientation or EarthOrientation.packaged()
@@ -275,9 +296,17 @@ def as_utc(times: Any, orientation: EarthOrientation | None = None) -> Time:
                 utc = fresh.utc
         else:
             utc = times.utc
-        if not np.all(np.isfinite(np.ma.filled(np.ma.asarray(utc.jd1 + utc.jd2), np.nan))):
-            raise InputError("times must be finite; some are masked or not a number")
         return Time(np.atleast_1d(utc.jd1), np.atleast_1d(utc.jd2), format="jd", scale="utc")
+
+
+def _check_range(times: Time) -> None:
+    days = np.ma.filled(np.ma.asarray(times.jd1 + times.jd2), np.nan)
+    if not np.all(np.isfinite(days)):
+        raise InputError("times must be finite; some are masked or not a number")
+    years = 2000 + (days - (J2000 + 2400000.5)) / 365.25
+    if np.min(years) < YEARS[0] or np.max(years) > YEARS[1]:
+        got = f"{np.min(days):.10g}" if np.size(days) == 1 else f"{np.min(days):.10g} to {np.max(days):.10g}"
+        raise InputError(f"times must lie in the years {YEARS[0]} to {YEARS[1]}; got Julian dates {got}: check their format")
 
 
 def one_si(value: Any, unit: u.UnitBase, name: str, example: str | None = None, least: float = -np.inf) -> float:

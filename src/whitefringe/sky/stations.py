@@ -6,7 +6,7 @@ station 2 minus station 1.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import combinations
@@ -17,7 +17,13 @@ import numpy as np
 from astropy.coordinates import EarthLocation
 
 from ..errors import InputError
-from ..units import FloatArray, as_si, read_only
+from ..units import FloatArray, as_si, frozen_quantities, read_only
+
+HEIGHTS = (-12e3, 10e3)
+"""Heights [m] over the ellipsoid at which an array may stand: from the deepest sea to above the highest mountain."""
+
+MOST_DISTANCE = 100e3
+"""Longest way [m] from an array's location to a station."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -51,10 +57,10 @@ class Station:
     uncertainty: u.Quantity = 0 * u.m
 
     def __post_init__(self) -> None:
-        _named(self.name)
+        named(self.name, "station")
         for field in ("east", "north", "up"):
             _coordinate(self, field)
-        _sigmas(self)
+        _keep(self)
 
     @staticmethod
     def geocentric(*, name: str, x: Any, y: Any, z: Any, uncertainty: Any = 0 * u.m) -> GeocentricStation:
@@ -94,10 +100,10 @@ class GeocentricStation:
     uncertainty: u.Quantity = 0 * u.m
 
     def __post_init__(self) -> None:
-        _named(self.name)
+        named(self.name, "station")
         for field in ("x", "y", "z"):
             _coordinate(self, field)
-        _sigmas(self)
+        _keep(self)
 
     def enu_si(self, location: EarthLocation) -> FloatArray:
         """Return east, north, up [m] about `location`."""
@@ -148,15 +154,15 @@ class Array:
     Parameters
     ----------
     location : EarthLocation
-        One place, from which the stations' local coordinates count.
+        One place, from which the stations' local coordinates count; 12 km below to 10 km above the ellipsoid.
     stations : sequence of Station or GeocentricStation
-        At least two, with different names.
+        At least two, with different names, at most 100 km from the location.
     name : str
 
     Raises
     ------
     InputError
-        Fewer than two stations, a name twice, or a wrong type.
+        Fewer than two stations, a name twice, a wrong type, a place that is not on the Earth, or a station too far from it.
 
     Examples
     --------
@@ -177,9 +183,12 @@ class Array:
     name: str = ""
 
     def __post_init__(self) -> None:
-        if not isinstance(self.location, EarthLocation) or self.location.size != 1 or self.location.ndim:
-            raise InputError(f"location must be one astropy EarthLocation; got {self.location!r}")
-        object.__setattr__(self, "stations", tuple(self.stations))
+        check_place(self.location)
+        frozen_quantities(self)
+        given: Any = self.stations
+        if not isinstance(given, Iterable) or isinstance(given, str):
+            raise InputError(f"stations must be a sequence of two or more Station objects; got {given!r}")
+        object.__setattr__(self, "stations", tuple(given))
         for station in self.stations:
             if not isinstance(station, STATION_KINDS):
                 raise InputError(f"stations must be Station objects; got {type(station).__name__}")
@@ -189,6 +198,12 @@ class Array:
         twice = sorted({name for name in names if names.count(name) > 1})
         if twice:
             raise InputError(f"station names must differ; twice or more: {', '.join(twice)}")
+        for name, distance in zip(names, np.linalg.norm(self.enu_si, axis=1), strict=True):
+            if distance > MOST_DISTANCE:
+                raise InputError(
+                    f"station {name!r} stands {distance / 1000:.6g} km from the array's location, but at most "
+                    f"{MOST_DISTANCE / 1000:g} km are allowed; give coordinates from the array's location"
+                )
 
     @property
     def names(self) -> tuple[str, ...]:
@@ -234,9 +249,35 @@ def enu_from_itrs(location: EarthLocation) -> FloatArray:
     return np.array([[-sl, cl, 0.0], [-sp * cl, -sp * sl, cp], [cp * cl, cp * sl, sp]])
 
 
-def _named(name: Any) -> None:
+def as_baselines(array: Array, baselines: Any) -> tuple[Baseline, ...]:
+    """Return one baseline or several as a tuple; all of the array's where nothing is given."""
+    if baselines is None:
+        return array.baselines
+    chosen = (baselines,) if isinstance(baselines, (Baseline, str)) or not isinstance(baselines, Iterable) else tuple(baselines)
+    wrong = next((item for item in chosen if not isinstance(item, Baseline)), None)
+    if wrong is not None or not chosen:
+        got = "none" if wrong is None else repr(wrong)
+        raise InputError(f'baselines must be one or more of the array\'s, for example array.baseline("Kiln", "Weir"); got {got}')
+    return chosen
+
+
+def check_place(location: Any) -> None:
+    """Refuse what is not one place on the Earth."""
+    if not isinstance(location, EarthLocation) or location.size != 1 or location.ndim:
+        raise InputError(f"location must be one astropy EarthLocation; got {location!r}")
+    if not np.all(np.isfinite([axis.to_value(u.m) for axis in (location.x, location.y, location.z)])):
+        raise InputError(f"location must be finite; got {location}: give longitude, latitude and height as numbers")
+    height = float(location.geodetic.height.to_value(u.m))
+    if not HEIGHTS[0] <= height <= HEIGHTS[1]:
+        raise InputError(
+            f"height of the location must lie between {HEIGHTS[0]:g} and {HEIGHTS[1]:g} m over the ellipsoid; got {height:.6g} m"
+        )
+
+
+def named(name: Any, what: str) -> None:
+    """Refuse a name that is not text, or blank."""
     if not isinstance(name, str) or not name.strip():
-        raise InputError(f"a station needs a name; got {name!r}")
+        raise InputError(f"a {what} needs a name; got {name!r}: give it as text that is not blank")
 
 
 def _coordinate(station: Any, field: str) -> None:
@@ -244,7 +285,13 @@ def _coordinate(station: Any, field: str) -> None:
     result = as_si(value, u.m, f"{field} of station {station.name!r}")
     if np.ndim(result) != 0:
         raise InputError(f"{field} of station {station.name!r} must be one number; got an array of shape {np.shape(result)}")
-    object.__setattr__(station, field, u.Quantity(value, copy=True))
+
+
+def _keep(station: Any) -> None:
+    """Check the uncertainty, and hold all numbers as copies: the caller's may change later."""
+    _sigmas(station)
+    object.__setattr__(station, "uncertainty", u.Quantity(station.uncertainty))
+    frozen_quantities(station)
 
 
 def _sigmas(station: Any) -> FloatArray:

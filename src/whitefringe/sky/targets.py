@@ -6,6 +6,7 @@ A target's uncertainty is that of its direction: as `Star` sees it, across right
 from __future__ import annotations
 
 import warnings
+from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import cached_property
 from typing import Any
@@ -17,7 +18,9 @@ from astropy.coordinates import ICRS, SkyCoord, UnitSphericalRepresentation
 from astropy.time import Time
 
 from ..errors import InputError
-from ..units import FloatArray, as_si
+from ..units import FloatArray, as_si, frozen_quantities
+from ._places import check_epoch, held_place
+from .stations import named
 
 PARSEC = 1 * u.pc
 
@@ -30,7 +33,8 @@ class Star:
     ----------
     name : str
     coordinates : SkyCoord
-        One place, in any frame astropy can turn into ICRS. Proper motion needs its epoch (``obstime``); a distance gives parallax.
+        One place, in any frame that astropy can turn into ICRS without knowing how the Earth is turned. Proper motion needs its epoch
+        (``obstime``); a distance gives parallax.
     uncertainty : Quantity [angle]
         One sigma of the place: one number, or two (right ascension times cos dec, declination). Zero by default.
     proper_motion_uncertainty : Quantity [angle / time]
@@ -39,7 +43,9 @@ class Star:
     Raises
     ------
     InputError, UnitsError
-        Not one SkyCoord, a proper motion without an epoch, or an uncertainty that is not an angle, is negative, or has another shape.
+        No name; not one SkyCoord with finite numbers, or one in a frame of the ground or of date (AltAz, CIRS, ...); a proper motion or
+        its uncertainty without an epoch; a radial velocity without a proper motion; an uncertainty that is not an angle, is negative, or
+        has another shape.
 
     Notes
     -----
@@ -59,12 +65,17 @@ class Star:
     proper_motion_uncertainty: u.Quantity = 0 * u.arcsec / u.yr
 
     def __post_init__(self) -> None:
-        if not isinstance(self.coordinates, SkyCoord) or not self.coordinates.isscalar:
-            raise InputError(f"coordinates of star {self.name!r} must be one astropy SkyCoord; got {type(self.coordinates).__name__}")
-        object.__setattr__(self, "coordinates", self.coordinates.icrs)
-        if self.moves and self.coordinates.obstime is None:
-            raise InputError(f"star {self.name!r} has a proper motion but no epoch; give obstime with its coordinates")
-        _ = self._sigmas  # says now what is wrong with them
+        named(self.name, "star")
+        object.__setattr__(self, "coordinates", held_place(self.coordinates, self.name))
+        _, growth = self._sigmas  # says now what is wrong with them
+        for field in ("uncertainty", "proper_motion_uncertainty"):
+            object.__setattr__(self, field, u.Quantity(getattr(self, field)))
+        frozen_quantities(self)
+        if self.coordinates.obstime is None and (self.moves or np.any(growth)):
+            what = "proper motion" if self.moves else "proper_motion_uncertainty"
+            raise InputError(
+                f"star {self.name!r} has a {what} but no epoch; give obstime with its coordinates (epoch of Star.at), from which it counts"
+            )
 
     def __eq__(self, other: object) -> bool:
         # SkyCoord refuses to compare a place that has an epoch with one that has none
@@ -101,25 +112,30 @@ class Star:
         Raises
         ------
         InputError, UnitsError
-            An angle without a unit, a declination beyond 90 deg, a parallax that is not positive, or motion without an epoch.
+            An angle without a unit, a declination beyond 90 deg, a parallax that is not positive, motion without an epoch, an epoch that
+            is not a Time, or an array where one number is meant.
         """
+        named(name, "star")
         right_ascension, declination = as_si(ra, u.rad, "ra", "deg"), as_si(dec, u.rad, "dec", "deg")
         if np.ndim(right_ascension) or np.ndim(declination):
             raise InputError(f"ra and dec of star {name!r} must be one number each")
         if abs(declination) > np.pi / 2:
             raise InputError(f"dec of star {name!r} must lie between -90 and 90 deg; got {dec}")
-        known: dict[str, Any] = {"obstime": epoch} if epoch is not None else {}
+        known: dict[str, Any] = {}
+        if epoch is not None:
+            check_epoch(epoch, name)
+            known["obstime"] = epoch
         if pm_ra_cosdec is not None or pm_dec is not None:
             still = 0 * u.mas / u.yr
-            known["pm_ra_cosdec"] = _motion(still if pm_ra_cosdec is None else pm_ra_cosdec, "pm_ra_cosdec")
-            known["pm_dec"] = _motion(still if pm_dec is None else pm_dec, "pm_dec")
+            for field, value in (("pm_ra_cosdec", pm_ra_cosdec), ("pm_dec", pm_dec)):
+                known[field] = _one(still if value is None else value, u.rad / u.s, field, name, "mas / yr") * u.rad / u.s
         if parallax is not None:
-            angle = as_si(parallax, u.arcsec, "parallax", "mas")
+            angle = _one(parallax, u.arcsec, "parallax", name, "mas")
             if not angle > 0:
                 raise InputError(f"parallax of star {name!r} must be above zero; got {parallax}; leave it out where it is not known")
             known["distance"] = PARSEC / angle
         if radial_velocity is not None:
-            known["radial_velocity"] = as_si(radial_velocity, u.m / u.s, "radial_velocity", "km / s") * u.m / u.s
+            known["radial_velocity"] = _one(radial_velocity, u.m / u.s, "radial_velocity", name, "km / s") * u.m / u.s
         place = SkyCoord(ra=right_ascension * u.rad, dec=declination * u.rad, frame="icrs", **known)
         return cls(name=name, coordinates=place, uncertainty=uncertainty, proper_motion_uncertainty=proper_motion_uncertainty)
 
@@ -169,8 +185,7 @@ class Star:
         sigma, growth = self._sigmas
         if not np.any(growth):
             return np.broadcast_to(sigma, (2, times.size))
-        epoch = self.coordinates.obstime
-        since = 0.0 if epoch is None else (times.tdb - epoch.tdb).to_value(u.s)
+        since = (times.tdb - self.coordinates.obstime.tdb).to_value(u.s)
         return np.asarray(np.hypot(sigma, growth * since))
 
 
@@ -190,7 +205,7 @@ class FixedDirection:
     Raises
     ------
     InputError, UnitsError
-        Not one angle each, an altitude beyond 90 deg, or a negative uncertainty.
+        No name, not one angle each, an altitude beyond 90 deg, or a negative uncertainty.
     """
 
     name: str
@@ -199,6 +214,8 @@ class FixedDirection:
     uncertainty: u.Quantity = 0 * u.arcsec
 
     def __post_init__(self) -> None:
+        named(self.name, "direction")
+        frozen_quantities(self)
         for field in ("azimuth", "altitude", "uncertainty"):
             value = as_si(getattr(self, field), u.rad, f"{field} of direction {self.name!r}", "deg")
             if np.ndim(value):
@@ -223,12 +240,41 @@ class LampTarget:
 
     name: str = "lamp"
 
+    def __post_init__(self) -> None:
+        named(self.name, "lamp")
+
     def sigma_si(self, times: Time) -> FloatArray:
         """Return zeros (2, n): the lamp has no direction."""
         return np.zeros((2, times.size))
 
 
 TARGET_KINDS = (Star, FixedDirection, LampTarget)
+
+
+def as_targets(targets: Any) -> tuple[Any, ...]:
+    """Return one target or any number of them as a tuple; one SkyCoord is taken as a star named ``target``.
+
+    Raises
+    ------
+    InputError
+        No target, or something else.
+    """
+    if isinstance(targets, SkyCoord) and targets.isscalar:
+        return (Star(name="target", coordinates=targets),)
+    several = isinstance(targets, Iterable) and not isinstance(targets, (str, SkyCoord))
+    chosen = tuple(targets) if several else (targets,)
+    kinds = ", ".join(kind.__name__ for kind in TARGET_KINDS)
+    if not chosen:
+        raise InputError(f"no targets: targets must be one or more of {kinds}; give at least one")
+    for target in chosen:
+        if isinstance(target, SkyCoord):
+            raise InputError(
+                f"a target must be one of {kinds}; got a SkyCoord: give each place a name, as in "
+                '[Star(name=f"target {k}", coordinates=place) for k, place in enumerate(places, 1)]'
+            )
+        if not isinstance(target, TARGET_KINDS):
+            raise InputError(f"a target must be one of {kinds}; got {type(target).__name__}")
+    return chosen
 
 
 def stars_as_icrs(stars: list[Star], times: Time) -> ICRS:
@@ -244,8 +290,11 @@ def stars_as_icrs(stars: list[Star], times: Time) -> ICRS:
     return ICRS(ra=longitude * u.rad, dec=latitude * u.rad, distance=np.linalg.norm(vectors, axis=0) * u.m)
 
 
-def _motion(value: Any, name: str) -> u.Quantity:
-    return as_si(value, u.rad / u.s, name, "mas / yr") * u.rad / u.s
+def _one(value: Any, unit: u.UnitBase, field: str, name: str, example: str) -> float:
+    result = as_si(value, unit, field, example)
+    if np.ndim(result):
+        raise InputError(f"{field} of star {name!r} must be one number; got an array of shape {np.shape(result)}")
+    return float(result)
 
 
 def _pair(value: Any, unit: u.UnitBase, name: str, example: str | None = None) -> FloatArray:

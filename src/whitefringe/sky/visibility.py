@@ -17,7 +17,7 @@ from ..errors import InputError
 from ..parameters import parameter
 from ..spectra._shape import number
 from ..spectra.lines import FOUR_LN2
-from ..units import FloatArray
+from ..units import FloatArray, frozen_quantities
 from ._object import Round, angle_si
 
 
@@ -35,6 +35,7 @@ class _Disc(Round):
     diameter: units.Quantity
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
         _ = self.diameter_si
 
     @cached_property
@@ -219,6 +220,7 @@ class GaussianDisc(Round):
     fwhm: units.Quantity = parameter("full width (FWHM)", units.mas, low=0.0, high=20.0, step=0.05, start=1.0)
 
     def __post_init__(self) -> None:
+        frozen_quantities(self)
         _ = self.fwhm_si
 
     @cached_property

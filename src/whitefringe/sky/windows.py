@@ -13,7 +13,7 @@ from astropy.time import Time
 
 from ..errors import InputError
 from ..units import FloatArray, positive_si
-from ._carriage_rows import LIMITS, CarriageRows, need_columns, span_text
+from ._carriage_rows import LIMITS, LINE_NOTE, CarriageRows, need_columns, span_text
 from .orientation import as_utc
 
 THE_END = "the times end"
@@ -47,7 +47,8 @@ def windows(table: Any, gap: u.Quantity = 1 * u.hour) -> QTable:
     table : QTable
         As `carriages` gives it, in any order of its rows.
     gap : Quantity [time]
-        Rows of one target and baseline that are further apart are not joined.
+        Rows of one target and baseline that are further apart are not joined. It must be longer than the step between two rows: with a
+        shorter one every row is a stretch of its own, of no duration.
 
     Returns
     -------
@@ -187,7 +188,8 @@ def windows_text(table: Any) -> str:
     Returns
     -------
     str
-        Times rounded to the minute, UTC, with the date on which the window opens; positions to the millimetre.
+        Times rounded to the minute, UTC, with the date on which the window opens; positions to the millimetre. What the media of delay
+        lines extrapolate follows as notes.
 
     Raises
     ------
@@ -209,7 +211,7 @@ def windows_text(table: Any) -> str:
             start, end = minute_text(row["start"]), minute_text(row["end"])
             hours = f"{start} to {end[-5:]} UTC"
             lines.append((row, f"{hours}  {_reach_text(row)}  then {row['reason']}"))
-    return _laid_out(lines)
+    return _laid_out(lines, table)
 
 
 def positions_text(table: Any) -> str:
@@ -223,7 +225,7 @@ def positions_text(table: Any) -> str:
     Returns
     -------
     str
-        Least and greatest position to the millimetre, or why no row can be observed.
+        Least and greatest position to the millimetre, or why no row can be observed; then notes as in `windows_text`.
 
     Raises
     ------
@@ -247,7 +249,7 @@ def positions_text(table: Any) -> str:
             row[f"carriage_{k + 1}_greatest"] = rows.positions[inside, k].max() * u.m
         row["greatest_speed"] = rows.speed[inside].max() * u.mm / u.s
         lines.append((row, f"{count}  {_reach_text(row)}"))
-    return _laid_out(lines)
+    return _laid_out(lines, table)
 
 
 def _by_pair(table: Any) -> list[Any]:
@@ -273,6 +275,8 @@ def minute_text(time: Time) -> str:
     return str(half_up.strftime("%Y-%m-%d %H:%M"))
 
 
-def _laid_out(lines: list[tuple[Any, str]]) -> str:
+def _laid_out(lines: list[tuple[Any, str]], table: Any) -> str:
     widths = [max(len(str(row[name])) for row, _ in lines) for name in ("target", "baseline")]
-    return "\n".join(f"{row['target']:<{widths[0]}}  {row['baseline']:<{widths[1]}}  {words}" for row, words in lines)
+    said = [f"{row['target']:<{widths[0]}}  {row['baseline']:<{widths[1]}}  {words}" for row, words in lines]
+    notes = (str(words) for key, words in table.meta.items() if str(key).startswith("NOTE"))
+    return "\n".join([*said, *(f"note: {words}" for words in notes if words.startswith(LINE_NOTE))])
