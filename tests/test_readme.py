@@ -28,7 +28,7 @@ def test_the_script_of_the_arms_and_the_sky_runs():
 
 
 def test_the_dashboard_runs(monkeypatch):
-    monkeypatch.chdir(ROOT / "notebooks" / "larkmoor")
+    monkeypatch.chdir(ROOT)
     exec(SCRIPTS[2], {})
 
 

@@ -66,6 +66,12 @@ def test_a_tracking_band(larkmoor):
     assert Setup.read(larkmoor / "bench.toml").tracking_light is None
 
 
+def test_how_well_the_air_is_known(larkmoor):
+    known = Setup.read(larkmoor / "array.toml").air_uncertainty
+    assert (known.temperature, known.pressure, known.humidity) == (0.3 * u.K, 0.5 * u.hPa, 5 * u.percent)
+    assert Setup.read(larkmoor / "bench.toml").air_uncertainty is None
+
+
 def test_written_arms_read_back(tmp_path, larkmoor):
     setup = Setup.read(larkmoor / "array.toml")
     first, second = tmp_path / "a.toml", tmp_path / "b.toml"
@@ -76,6 +82,7 @@ def test_written_arms_read_back(tmp_path, larkmoor):
     assert again.arms.opd(1.65 * u.um) == setup.arms.opd(1.65 * u.um)
     assert [item.length_uncertainty for _, item in again.arms.signed] == [item.length_uncertainty for _, item in setup.arms.signed]
     assert again.tracking == setup.tracking
+    assert again.air_uncertainty == setup.air_uncertainty
 
 
 @pytest.mark.parametrize(
@@ -91,6 +98,7 @@ def test_written_arms_read_back(tmp_path, larkmoor):
         (AIR + "levelled = true\n" + ARM, r'air.levelled: this key belongs to model = "two air models"'),
         (AIR.replace("ciddor 1996", "two air models") + ARM, "air.short: this key is missing"),
         (AIR + "colour = 1\n" + ARM, "air.colour: unknown key; the keys here are model, temperature"),
+        (AIR + '[air_uncertainty]\ntemperature = "-1 K"\n' + ARM, "air_uncertainty: an uncertainty must be one number, zero or more"),
         (ARM, r"second_arm\[0\].medium: there is no \[air\] in this file"),
         (ARM.replace('"air"', '"mud"'), r"second_arm\[0\].medium: no glass is named 'mud'; there are fused silica"),
         (AIR + ARM.replace("30 m", "-30 m"), r"second_arm\[0\]: length must be one number, zero or more"),

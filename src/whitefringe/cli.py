@@ -157,10 +157,10 @@ def _through_arms(setup: Any) -> tuple[list[tuple[str, Measured | str]], list[st
         return [], []
     from .media import DispersedPacket, band_offset
 
-    packet = DispersedPacket(pair=setup.arms, light=setup.light)
+    packet = DispersedPacket(pair=setup.arms, light=setup.light, air=setup.air_uncertainty)
     rows, flags = list(packet.rows), list(packet.flags)
     if setup.tracking_light is not None:
-        found = band_offset(setup.arms, setup.tracking_light, setup.light)
+        found = band_offset(setup.arms, setup.tracking_light, setup.light, air=setup.air_uncertainty)
         rows += [("offset from tracking band", found.offset), *found.rows[1:]]
         flags = list(dict.fromkeys([*flags, *found.flags]))
     return rows, flags

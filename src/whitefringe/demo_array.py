@@ -39,6 +39,11 @@ pressure = "900 hPa"
 humidity = "35 %"
 co2 = 370e-6
 
+[air_uncertainty]        # one standard deviation, of what all air has in common
+temperature = "0.3 K"
+pressure = "0.5 hPa"
+humidity = "5 %"
+
 [[first_arm]]            # Kiln: an evacuated pipe, and the plate of its vacuum window
 medium = "vacuum"
 length = "24 m"

@@ -41,7 +41,7 @@ from pydantic import Field
 from .coherence import COHERENCE_DEFINITIONS, DEFAULT_DEFINITION
 from .errors import InputError, SetupError
 from .io import read_toml
-from .media import ArmPair
+from .media import AirUncertainty, ArmPair
 from .scans import ScanLayout, Tolerances
 from .setup_arms import read_arms
 from .setup_entries import Entry, KeyPath, QuantityText, UnitText, built, checked, member, read_beside, without_shape
@@ -129,6 +129,7 @@ class _SetupEntry(Entry):
     filter: list[dict[str, Any]] = Field(default_factory=list)
     tracking: list[dict[str, Any]] = Field(default_factory=list)
     air: dict[str, Any] | None = None
+    air_uncertainty: dict[str, Any] | None = None
     first_arm: list[dict[str, Any]] = Field(default_factory=list)
     second_arm: list[dict[str, Any]] = Field(default_factory=list)
     array: dict[str, Any] | None = None
@@ -161,6 +162,8 @@ class Setup:
         Filters of a second band, in which fringes are followed; of the same source.
     arms : ArmPair, optional
         What the two arms are made of, where it differs.
+    air_uncertainty : AirUncertainty, optional
+        How well the air that both arms share is known.
     observation : Observation, optional
         The array, its targets and the night.
     name, origin : str
@@ -176,6 +179,7 @@ class Setup:
     channels: int = 0
     tracking: tuple[Filter, ...] = ()
     arms: ArmPair | None = None
+    air_uncertainty: AirUncertainty | None = None
     observation: Observation | None = None
     name: str = "bench"
     origin: str = ""
@@ -189,6 +193,8 @@ class Setup:
             raise InputError("tracking must be a tuple of filters such as (spectra.TopHat(...),)")
         if self.arms is not None and not isinstance(self.arms, ArmPair):
             raise InputError(f"arms must be a media.ArmPair; got {self.arms!r}")
+        if self.air_uncertainty is not None and not isinstance(self.air_uncertainty, AirUncertainty):
+            raise InputError(f"air_uncertainty must be a media.AirUncertainty; got {self.air_uncertainty!r}")
         as_si(self.delay, u.m, "delay", "um")
         if isinstance(self.channels, bool) or not isinstance(self.channels, int) or not 0 <= self.channels <= MOST_CHANNELS:
             raise InputError(f"channels must be a whole number from 0 to {MOST_CHANNELS}; got {self.channels!r}")
@@ -232,6 +238,9 @@ class Setup:
                 definition=_definition(entry.prediction.coherence_length, path),
                 tracking=tuple(_filter(item, path, f"tracking[{k}]") for k, item in enumerate(entry.tracking)),
                 arms=arms,
+                air_uncertainty=None
+                if entry.air_uncertainty is None
+                else built(AirUncertainty, entry.air_uncertainty, path, "air_uncertainty"),
                 observation=_observation(entry, arms, path),
                 name=entry.name,
                 origin=str(path),

@@ -6,6 +6,11 @@
     pressure = "850 hPa"
     humidity = "30 %"
 
+    [air_uncertainty]            # one standard deviation, of what all air has in common
+    temperature = "0.3 K"
+    pressure = "0.5 hPa"
+    humidity = "5 %"
+
     [[first_arm]]
     medium = "air"
     length = "42.5 m"

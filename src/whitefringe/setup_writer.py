@@ -49,6 +49,7 @@ def write_setup(setup: Setup, path: str | Path, *, overwrite: bool = False) -> t
         "filter": [_filter(item, path, k, tables) for k, item in enumerate(setup.filters)],
         "tracking": [_filter(item, path, k, tables, "tracking") for k, item in enumerate(setup.tracking)],
         **write_arms(setup.arms, path, _text),
+        "air_uncertainty": None if setup.air_uncertainty is None else _stated(setup.air_uncertainty, path, tables, "air_uncertainty"),
         **_observation(setup, path),
         "scan": _stated(setup.layout, path, tables, "scan"),
         "prediction": {

@@ -46,7 +46,7 @@ def test_a_path_may_be_text(tmp_path):
 def test_an_existing_file_is_kept(tmp_path):
     path = tmp_path / "a.ecsv"
     path.write_text("mine")
-    with pytest.raises(FileContentError, match=r"a\.ecsv: the file exists; say overwrite=True to replace it"):
+    with pytest.raises(FileContentError, match=r"a\.ecsv: the file exists; say overwrite=True \(--overwrite\) to replace it"):
         write_table(TABLE, path)
     assert path.read_text() == "mine"
     assert os.listdir(tmp_path) == ["a.ecsv"]

@@ -333,3 +333,9 @@ def test_refractivity_keeps_the_digits_and_the_flag():
     assert air.refractivity(0.633 * u.um).value == pytest.approx(27653.0210e-8, rel=1e-9)
     assert "extrapolated" in air.refractivity(3 * u.um).info.description
     assert "extrapolated" in air.index_derivative(3 * u.um, "temperature").info.description
+
+
+@pytest.mark.parametrize("celsius", [5, 35])
+def test_laboratory_air_only_for_the_unscaled_water_term(celsius):
+    with pytest.raises(InputError, match=r"Birch & Downs 1994: temperature .* lies outside 10 to 30 deg_C"):
+        media.BirchDowns1994(temperature=celsius * u.deg_C)

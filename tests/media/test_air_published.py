@@ -22,7 +22,8 @@ def air_of(row):
     if "co2" in row.inputs:
         others["co2"] = float(row.inputs["co2"])
     conditions = {name: row.quantity(name) for name in ("temperature", "pressure", "humidity")}
-    return MODELS[row.inputs["model"]](**conditions, **others)
+    # hot rows of the unscaled water term stand in the table to be told from the scaled ones, outside the range of laboratory air
+    return MODELS[row.inputs["model"]](**conditions, **others, extrapolate=row.inputs["model"] == media.BirchDowns1994.shape)
 
 
 # ---------------------------------------------------------------- tables
@@ -63,7 +64,7 @@ def test_a_misprint_stays_a_misprint():
 def test_the_two_water_terms_are_not_confused():
     """The scaled water term and the first one differ by far more than the digits of the tables."""
     conditions = {"temperature": 50 * u.deg_C, "pressure": 120 * u.kPa, "humidity": 100 * u.percent}
-    first = media.BirchDowns1994(**conditions).refractive_index(633 * u.nm)
+    first = media.BirchDowns1994(**conditions, extrapolate=True).refractive_index(633 * u.nm)
     scaled = media.BirchDowns1994WaterScaled(**conditions).refractive_index(633 * u.nm)
     assert (scaled - first).value == pytest.approx(4.223e-7, abs=1e-10)
 

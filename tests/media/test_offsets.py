@@ -206,3 +206,20 @@ def test_air_by_two_models_in_one_pair_is_flagged():
     words = "the arms' air is by different models, Ciddor 1996 and Mathar 2007"
     assert words in arms.opd(1.5 * u.um).info.description
     assert any(words in flag for flag in media.band_offset(arms, band(1.45, 0.05), band(1.6, 0.05)).flags)
+
+
+def test_a_glass_of_uncertain_temperature():
+    """Propagated where the glass has temperature coefficients, refused where it has none."""
+
+    def arms(temperature, sigma):
+        plate = media.Segment(
+            medium=media.Glass.named("N-BK7"), length=20 * u.mm, temperature=temperature * u.deg_C, temperature_uncertainty=sigma * u.K
+        )
+        return media.ArmPair(first=[], second=[plate])
+
+    moved = media.band_offset(arms(30, 0), RED, NEAR).offset.value - media.band_offset(arms(25, 0), RED, NEAR).offset.value
+    found = media.band_offset(arms(25, 5), RED, NEAR)
+    assert found.offset.uncertainty.to_value(u.um) == pytest.approx(abs(moved.to_value(u.um)), rel=0.05)
+    assert found.parts["single segments' temperatures"] == found.offset.uncertainty
+    with pytest.raises(InputError, match="fused silica has no temperature coefficients"):
+        media.Segment(medium=SILICA, length=1 * u.mm, temperature_uncertainty=1 * u.K)

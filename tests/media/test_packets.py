@@ -322,3 +322,25 @@ def test_one_sharp_line_has_no_packet():
     named = dict(media.DispersedPacket(pair=UNEVEN, light=light).rows)
     assert isinstance(named["width"], str)
     assert named["centre"].value.unit == u.um
+
+
+def test_numbers_carry_the_uncertainties_of_arms_and_air():
+    """Each number moved by one standard deviation of the length, and of the air's temperature: what it changes by, in quadrature."""
+    air = media.Ciddor1996(temperature=285 * u.K, pressure=850 * u.hPa, humidity=30 * u.percent)
+    light = spectra.detected(spectra.Flat(), spectra.TopHat(centre=0.8 * u.um, width=0.1 * u.um))
+    known = media.AirUncertainty(temperature=2 * u.K)
+
+    def packet(length=40.0, temperature=285.0, sigma=0.05):
+        here = media.Segment(medium=air.under(temperature=temperature * u.K), length=length * u.m, length_uncertainty=sigma * u.m)
+        return media.DispersedPacket(pair=media.ArmPair(first=[], second=[here]), light=light, air=known)
+
+    middle, longer, warmer = packet(), packet(length=40.05), packet(temperature=287.0)
+    for name in ("peak_contrast", "position", "centre", "width", "broadening", "asymmetry"):
+        here = getattr(middle, name)
+        moves = [(getattr(item, name).value - here.value).to_value(here.unit) for item in (longer, warmer)]
+        assert here.uncertainty.to_value(here.unit) == pytest.approx(np.hypot(*moves), rel=0.05), name
+
+
+def test_nothing_uncertain_leaves_no_uncertainty():
+    light = spectra.detected(spectra.Flat(), spectra.TopHat(centre=1.25 * u.um, width=0.1 * u.um), samples=512)
+    assert all(value.uncertainty is None for _, value in media.DispersedPacket(pair=UNEVEN, light=light).rows)

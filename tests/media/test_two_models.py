@@ -68,3 +68,16 @@ def test_two_model_messages():
         media.TwoModelAir(short=short, long=long, meet=1.5)
     with pytest.raises(InputError, match=r"meet must be one number; got an array of shape \(2,\)"):
         media.TwoModelAir(short=short, long=long, meet=[1.4, 1.5] * u.um)
+
+
+def test_derivatives_of_each_side():
+    dry = {"temperature": 288.15 * u.K, "pressure": 101325 * u.Pa, "humidity": 20 * u.percent}
+    short, long = media.Ciddor1996(**dry, co2=370e-6), media.Mathar2007(**dry)
+    air = media.TwoModelAir(short=short, long=long, meet=1.5 * u.um)
+    for by in ("temperature", "pressure", "humidity"):
+        for method in ("index_derivative", "group_index_derivative"):
+            both = getattr(air, method)([1.3, 2.2] * u.um, by)
+            assert both[0] == getattr(short, method)(1.3 * u.um, by)
+            assert both[1] == getattr(long, method)(2.2 * u.um, by)
+    with pytest.raises(InputError, match="vacuum does not change with the conditions of the air"):
+        media.Vacuum().index_derivative(1 * u.um, "temperature")

@@ -218,3 +218,13 @@ def test_what_a_field_of_view_refuses():
         field_of_view(LIGHT, 100 * u.m, "longest")
     with pytest.raises(InputError, match=r"light must be a Spectrum, as spectra\.detected gives it; got 5"):
         field_of_view(5, 100 * u.m)
+
+
+def test_against_added_path_a_packet_is_gamma_times_the_conjugate_of_v():
+    """A star 0.7 mas to the east on a baseline to the east: station 2 is nearer, the first arm's light late, the packet at +u alpha."""
+    light = detected(Flat(), TopHat(centre=1.65 * u.um, width=0.05 * u.um))
+    alpha = 0.7 * u.mas
+    path = (100 * u.m * alpha.to_value(u.rad)).to(u.um)
+    star = Group(objects=[Point()], east=[0.7] * u.mas)
+    v = band_visibility(star, 100 * u.m, 0 * u.m, light)
+    assert self_coherence(light, -path) == pytest.approx(np.conj(v), abs=1e-9)

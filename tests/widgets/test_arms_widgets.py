@@ -363,7 +363,7 @@ def test_the_table_has_the_offset_its_drifts_and_the_flags(bench):
             assert f">{unit}<" in table.html.value
         assert "uncertainty of the offset: lengths 0.055 µm" in table.html.value
         assert "meet at 1.4 um with a step in n" in table.html.value
-        assert repr(table) == "BandOffsetTable: science band at 112.094 ± 0.055 um from the tracking band"
+        assert repr(table) == "BandOffsetTable: science band at 112.09 ± 0.19 um from the tracking band"
 
 
 def test_without_air_the_drifts_have_a_reason():

@@ -258,7 +258,7 @@ def write_table(table: Table, path: str | Path, *, overwrite: bool = False) -> P
     if not path.name.lower().endswith((".ecsv", *FITS_ENDINGS)):
         raise FileContentError(f"{path}: the name must end in .ecsv, or for a FITS table in one of {', '.join(FITS_ENDINGS)}")
     if path.exists() and not overwrite:
-        raise FileContentError(f"{path}: the file exists; say overwrite=True to replace it")
+        raise FileContentError(f"{path}: the file exists; say overwrite=True (--overwrite) to replace it")
     if not path.parent.is_dir():
         raise FileContentError(f"{path}: there is no folder {path.parent} to write to")
     kind = "fits" if path.name.lower().endswith(FITS_ENDINGS) else "ascii.ecsv"

@@ -2,28 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import Any, ClassVar, NamedTuple, Self
 
 import astropy.units as u
-import numpy as np
 
 from ..errors import InputError, UnitsError
 from ..parameters import parameter
-from ..units import PPM, SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, frozen_quantities, positive_si
-from ._derivatives import times_wavenumber
-from .medium import Medium, Range, flagged, one_temperature_si
+from ..units import PPM, FloatArray, as_quantity, as_si, frozen_quantities, positive_si
+from .medium import Medium, Range, one_temperature_si
 from .moist_air import SATURATION_FORMS, saturation_si
-
-CONDITIONS = ("temperature", "pressure", "humidity")
-"""Names of what acts on air."""
-
-STEPS = {"temperature": 0.02, "pressure": 20.0, "humidity": 1e-3}
-"""Steps [K, Pa, 1] of the central differences: the models are so smooth that what they leave is below 1e-8 of the derivative."""
-
-DERIVATIVE_UNITS = {"temperature": u.K, "pressure": u.Pa, "humidity": u.dimensionless_unscaled}
 
 
 class State(NamedTuple):
@@ -43,7 +32,8 @@ class Air(Medium):
     temperature : Quantity [K or deg_C]
     pressure : Quantity [Pa]
     humidity : Quantity [percent, or pressure]
-        Relative humidity (over ice below 0 degrees C), or the partial pressure of the water vapour.
+        Relative humidity (over ice below 0 degrees C), or that times the saturation pressure of pure water, as tables of vapour pressure
+        give it (Ciddor's enhancement factor comes on top).
     extrapolate : bool
         Go beyond the model's ranges, and have the results flagged.
     saturation : str
@@ -162,42 +152,6 @@ class Air(Medium):
     def relative_humidity(self) -> float:
         """Vapour pressure over saturation pressure."""
         return self.vapour_pressure_si / self._saturated_si
-
-    def index_derivative(self, wavelength: Any, by: str) -> u.Quantity:
-        """Return the derivative of the phase index with a condition, the others fixed (the relative humidity too).
-
-        Parameters
-        ----------
-        wavelength : Quantity [vacuum wavelength or frequency], any shape
-        by : str
-            ``"temperature"``, ``"pressure"`` or ``"humidity"``.
-
-        Returns
-        -------
-        Quantity [1/K, 1/Pa, or per unit of relative humidity; 0.01 of it is per percent]
-
-        Notes
-        -----
-        A central difference of the model, see `STEPS`.
-        """
-        return self._derivative(wavelength, by, lambda sigma, shift: self.refractivity_shifted_si(sigma, **shift)[0])
-
-    def group_index_derivative(self, wavelength: Any, by: str) -> u.Quantity:
-        """Return the derivative of the group index with a condition; arguments as for `index_derivative`."""
-
-        def group(sigma: FloatArray, shift: dict[str, float]) -> FloatArray:
-            return np.asarray(times_wavenumber(self.refractivity_shifted_si(sigma, **shift), sigma)[1])
-
-        return self._derivative(wavelength, by, group)
-
-    def _derivative(self, wavelength: Any, by: str, function: Callable[[FloatArray, dict[str, float]], FloatArray]) -> u.Quantity:
-        if by not in STEPS:
-            raise InputError(f"by must be one of {', '.join(STEPS)}; got {by!r}")
-        sigma = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float) / SPEED_OF_LIGHT
-        flags = self.flags_si(sigma)
-        step = STEPS[by]
-        change = (function(sigma, {by: step}) - function(sigma, {by: -step})) / (2 * step)
-        return flagged(u.Quantity(change, 1 / DERIVATIVE_UNITS[by]), flags)
 
 
 HUMIDITY = "a relative humidity or a vapour pressure, for example 40 * u.percent or 900 * u.Pa"

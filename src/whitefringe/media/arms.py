@@ -52,7 +52,11 @@ class Segment:
             value = as_si(getattr(self, name), unit, name)
             if np.ndim(value) or value < 0:
                 raise InputError(f"{name} must be one number, zero or more; got {getattr(self, name)}")
-        _ = self.medium_here
+        here = self.medium_here
+        if as_si(self.temperature_uncertainty, u.K, "temperature_uncertainty") > 0 and not here.feels_temperature:
+            raise InputError(
+                f"{self.medium.name} has no temperature coefficients, so nothing follows from a temperature_uncertainty: leave it out"
+            )
 
     @cached_property
     def length_si(self) -> float:

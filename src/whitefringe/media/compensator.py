@@ -19,7 +19,7 @@ from ._derivatives import times_wavenumber
 from .arms import ArmPair, Segment
 from .glasses import Glass
 from .packets import DispersedPacket, centre_si, coarser
-from .uncertainty import AirUncertainty, check_arms_and_lights, total, uncertainties
+from .uncertainty import AirUncertainty, ShiftedPair, check_arms_and_lights, total, uncertainties
 
 AIMS = {
     "contrast loss": "least sum of -ln(greatest contrast) over the bands, each at its own best path difference",
@@ -138,15 +138,16 @@ def compensator(
     near = _solve(pair, glass, coarse, minimise)
     best = near if minimise == "group delay spread" else _refined(partial(_loss, _Search(pair, glass), lights, minimise), near, NEAR)
     parts = uncertainties(partial(_shifted, glass=glass, lights=coarse, aim=minimise, near=near), pair, air or AirUncertainty())
-    sigma = total(parts)
+    sigma = float(total(parts))
     thickness = Measured(
         value=(best * u.m).to(u.mm),
         uncertainty=(sigma * u.m).to(u.mm) if sigma else None,
         definition=f"of {glass.name} in the second arm (negative: in the first); {AIMS[minimise]}",
-        citation="malitson",
     )
     shares = {name: (part * u.m).to(u.um) for name, part in parts.items()}
-    return Compensation(thickness=thickness, aim=minimise, parts=shares, flags=flags, **_remaining(pair, glass, lights, minimise, best))
+    return Compensation(
+        thickness=thickness, aim=minimise, parts=shares, flags=flags, **_remaining(pair, glass, lights, minimise, best, air)
+    )
 
 
 def with_plate(pair: ArmPair, glass: Glass, thickness: float) -> ArmPair:
@@ -157,9 +158,11 @@ def with_plate(pair: ArmPair, glass: Glass, thickness: float) -> ArmPair:
     return replace(pair, second=(*pair.second, *plate))
 
 
-def _remaining(pair: ArmPair, glass: Glass, lights: tuple[Spectrum, ...], aim: str, best: float) -> dict[str, Any]:
+def _remaining(
+    pair: ArmPair, glass: Glass, lights: tuple[Spectrum, ...], aim: str, best: float, air: AirUncertainty | None
+) -> dict[str, Any]:
     after = with_plate(pair, glass, best)
-    packets = [DispersedPacket(pair=after, light=light) for light in lights]
+    packets = [DispersedPacket(pair=after, light=light, air=air) for light in lights]
     zeros = [centre_si(after, light) for light in lights]
     delay = float(np.mean(zeros))
     contrasts = [packet.peak_contrast for packet in packets]
@@ -170,7 +173,7 @@ def _remaining(pair: ArmPair, glass: Glass, lights: tuple[Spectrum, ...], aim: s
     return {
         "pair": after,
         "contrasts": tuple(contrasts),
-        "before": tuple(DispersedPacket(pair=pair, light=light).peak_contrast for light in lights),
+        "before": tuple(DispersedPacket(pair=pair, light=light, air=air).peak_contrast for light in lights),
         "offsets": tuple(Measured(value=((zero - zeros[0]) * u.m).to(u.um), definition="less that of the first band") for zero in zeros),
         "delay": Measured(value=(delay * u.m).to(u.um), definition="added path difference to work at"),
     }
@@ -203,22 +206,10 @@ def _refined(loss: Any, near: float, step: float) -> float:
 
 def _shifted(pair: ArmPair, shift: dict[str, Any], *, glass: Glass, lights: tuple[Spectrum, ...], aim: str, near: float) -> float:
     """Thickness [m] for a pair that is a little different."""
-    moved = _Shifted(first=pair.first, second=pair.second, shift=tuple(shift.items()))
+    moved = ShiftedPair.of(pair, shift)
     if aim == "group delay spread":
         return _equal_delays(moved, glass, lights)
     return _refined(partial(_loss, _Search(moved, glass), lights, aim), near, 0.02 * _tolerable(glass, lights) + 1e-6)
-
-
-@dataclass(frozen=True, kw_only=True)
-class _Shifted(ArmPair):
-    """A pair whose air is warmer, denser or moister."""
-
-    shift: tuple[tuple[str, Any], ...] = ()
-
-    def refraction_shifted_si(self, wavenumber: Any, only: int | None = None, **shift: float) -> Any:
-        """As of a pair, in the shifted air."""
-        given: dict[str, Any] = dict(self.shift) | shift
-        return super().refraction_shifted_si(wavenumber, **{"only": only, **given})
 
 
 class _Search:
@@ -286,7 +277,7 @@ def _least_dispersion(pair: ArmPair, glass: Glass, lights: tuple[Spectrum, ...])
 
 
 def _tolerable(glass: Glass, lights: tuple[Spectrum, ...]) -> float:
-    """Thickness [m] that turns the phase at the bands' rms width by about six turns of a radian: some widths of the optimum."""
+    """Thickness [m] that turns the phase at the bands' rms width by about six radians: some widths of the optimum."""
     _, plate, variance = _orders(ArmPair(first=[], second=[]), glass, lights)
     return float(np.min(6.0 / (np.pi * np.abs(plate) * variance)))
 
@@ -295,7 +286,7 @@ def _loss(search: _Search, lights: tuple[Spectrum, ...], aim: str, thickness: fl
     packets = [DispersedPacket(pair=search.with_thickness(thickness), light=light) for light in lights]
     if aim == "loss at one delay":
         return _one_delay(packets)[1]
-    return float(-sum(np.log(packet.peak_contrast.value.value) for packet in packets))
+    return float(-sum(np.log(packet.peak_height) for packet in packets))
 
 
 def _one_delay(packets: list[DispersedPacket]) -> tuple[float, float]:

@@ -150,6 +150,11 @@ class Glass(Medium):
         return self if temperature is None else replace(self, now=temperature)
 
     @property
+    def feels_temperature(self) -> bool:
+        """With temperature coefficients."""
+        return self.thermal is not None
+
+    @property
     def wavelengths(self) -> Range:  # type: ignore[override]
         """Range of the formula."""
         low, high = self._ends

@@ -58,7 +58,7 @@ class Mathar2007(Air):
     -----
     Fitted to line-by-line spectra from 10 to 25 degrees C, 500 to 1023 hPa and 5 to 60 % of relative humidity. Drier air is let through
     with a flag, since the published values for dry air are computed in that way too. Where the model meets Ciddor 1996, at 1.3 to
-    1.7 um, it lies 5.1e-8 above it: see `TwoModelAir`.
+    1.7 um, it lies 5.1e-8 above it in dry air of sea level, less in moist air: see `TwoModelAir`.
 
     References
     ----------

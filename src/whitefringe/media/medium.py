@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass, field
 from typing import Any, ClassVar, Self
 
@@ -13,6 +14,15 @@ from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_temperature_
 from ._derivatives import times_wavenumber
 
 ADVICE = "use a medium that is stated there (media.TwoModelAir joins two air models), or say extrapolate=True to have the result flagged"
+
+
+CONDITIONS = ("temperature", "pressure", "humidity")
+"""Names of what acts on air."""
+
+STEPS = {"temperature": 0.02, "pressure": 20.0, "humidity": 1e-3}
+"""Steps [K, Pa, 1] of the central differences: the models are so smooth that what they leave is below 1e-8 of the derivative."""
+
+DERIVATIVE_UNITS = {"temperature": u.K, "pressure": u.Pa, "humidity": u.dimensionless_unscaled}
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -74,6 +84,11 @@ class Medium:
     def is_air(self) -> bool:
         """Whether temperature, pressure and humidity of the air act on it."""
         return False
+
+    @property
+    def feels_temperature(self) -> bool:
+        """Whether its index is known to change with the temperature of a segment."""
+        return self.is_air
 
     def flags(self, wavelength: Any = None) -> tuple[str, ...]:
         """Return what was extrapolated, in words, for vacuum wavelengths (or frequencies); empty where everything is in range."""
@@ -139,6 +154,44 @@ class Medium:
         """Return d^3k/domega^3 = (1 / 4 pi^2 c^3) d^3(n sigma)/dsigma^3 [fs^3/mm]; arguments as for `refractive_index`."""
         scale = 1 / (4 * np.pi**2 * SPEED_OF_LIGHT**3)
         return self._flagged(wavelength, lambda sigma: scale * self._path_si(sigma)[3] * 1e42, u.fs**3 / u.mm)
+
+    def index_derivative(self, wavelength: Any, by: str) -> u.Quantity:
+        """Return the derivative of the phase index with a condition, the others fixed (the relative humidity too).
+
+        Parameters
+        ----------
+        wavelength : Quantity [vacuum wavelength or frequency], any shape
+        by : str
+            ``"temperature"``, ``"pressure"`` or ``"humidity"``.
+
+        Returns
+        -------
+        Quantity [1/K, 1/Pa, or per unit of relative humidity; 0.01 of it is per percent]
+
+        Notes
+        -----
+        A central difference of the model, see `STEPS`.
+        """
+        return self._derivative(wavelength, by, lambda sigma, shift: self.refractivity_shifted_si(sigma, **shift)[0])
+
+    def group_index_derivative(self, wavelength: Any, by: str) -> u.Quantity:
+        """Return the derivative of the group index with a condition; arguments as for `index_derivative`."""
+
+        def group(sigma: FloatArray, shift: dict[str, float]) -> FloatArray:
+            return np.asarray(times_wavenumber(self.refractivity_shifted_si(sigma, **shift), sigma)[1])
+
+        return self._derivative(wavelength, by, group)
+
+    def _derivative(self, wavelength: Any, by: str, function: Callable[[FloatArray, dict[str, float]], FloatArray]) -> u.Quantity:
+        if not self.is_air:
+            raise InputError(f"{self.name} does not change with the conditions of the air")
+        if by not in STEPS:
+            raise InputError(f"by must be one of {', '.join(STEPS)}; got {by!r}")
+        sigma = np.asarray(as_frequency_si(wavelength, "wavelength"), dtype=float) / SPEED_OF_LIGHT
+        flags = self.flags_si(sigma)
+        step = STEPS[by]
+        change = (function(sigma, {by: step}) - function(sigma, {by: -step})) / (2 * step)
+        return flagged(u.Quantity(change, 1 / DERIVATIVE_UNITS[by]), flags)
 
     def _path_si(self, sigma: FloatArray) -> FloatArray:
         """(n - 1) sigma and its derivatives: wavenumber that the medium adds to the vacuum's."""

@@ -106,13 +106,12 @@ def band_offset(
     else:
         value = DispersedPacket(pair=pair, light=light_b).peak_si - DispersedPacket(pair=pair, light=light_a).peak_si
     parts = uncertainties(offset, pair, air or AirUncertainty())
-    sigma = total(parts)
+    sigma = float(total(parts))
     return BandOffset(
         offset=Measured(
             value=_micrometres(value),
             uncertainty=_micrometres(sigma) if sigma else None,
             definition=f"zero point of the second band less that of the first; {DEFINITIONS[by]}",
-            citation="ciddor",
         ),
         parts={name: _micrometres(part) for name, part in parts.items()},
         flags=flags,

@@ -18,6 +18,7 @@ from ..spectra import Spectrum
 from ..units import SPEED_OF_LIGHT, FloatArray, as_si
 from ._transform import PhasedTransform
 from .arms import ArmPair, band_si
+from .uncertainty import AirUncertainty, ShiftedPair, any_uncertain, check_arms_and_lights, total, uncertainties
 
 PER_WIDTH = 16
 """Path differences per undispersed packet width in the search for the greatest contrast."""
@@ -43,6 +44,9 @@ class DispersedPacket:
     ----------
     pair : ArmPair
     light : Spectrum
+    air : AirUncertainty, optional
+        Of the air that both arms share. With it, and with the uncertainties of the segments, the numbers carry uncertainties (first
+        order, one standard deviation).
 
     Notes
     -----
@@ -62,8 +66,10 @@ class DispersedPacket:
 
     pair: ArmPair
     light: Spectrum
+    air: AirUncertainty | None = None
 
     def __post_init__(self) -> None:
+        check_arms_and_lights(self.pair, (self.light,), self.air)
         _ = self.flags
 
     @cached_property
@@ -166,19 +172,57 @@ class DispersedPacket:
         return self._zero_si + self._peak[0]
 
     @property
+    def peak_height(self) -> float:
+        """Greatest contrast, as a bare number."""
+        return self._peak[1]
+
+    @property
     def peak_contrast(self) -> Measured:
         """Greatest contrast; 1 for equal arms."""
-        return Measured(value=self._peak[1] * u.one, definition="greatest |gamma| of the dispersed packet", citation="goodman")
+        return self._measured("peak contrast", self._peak[1] * u.one, "greatest |gamma| of the dispersed packet")
 
     @property
     def position(self) -> Measured:
         """Added path difference of the greatest contrast."""
-        return Measured(value=(self.peak_si * u.m).to(u.um), definition="path difference, added in vacuum, of the greatest contrast")
+        return self._measured("position", (self.peak_si * u.m).to(u.um), "path difference, added in vacuum, of the greatest contrast")
 
     @property
     def centre(self) -> Measured:
         """Added path difference of the centre of |gamma|^2."""
-        return Measured(value=(self.centre_si * u.m).to(u.um), definition="path difference, added in vacuum, of the centre of |gamma|^2")
+        return self._measured("centre", (self.centre_si * u.m).to(u.um), "path difference, added in vacuum, of the centre of |gamma|^2")
+
+    def _measured(self, name: str, value: u.Quantity, definition: str) -> Measured:
+        sigma = self._sigmas.get(name)
+        unit = u.m if value.unit.is_equivalent(u.m) else u.one
+        return Measured(value=value, uncertainty=None if sigma is None else (sigma * unit).to(value.unit), definition=definition)
+
+    @cached_property
+    def _sigmas(self) -> dict[str, float]:
+        """One standard deviation of every number [m or 1]; nothing where nothing is uncertain."""
+        air = self.air or AirUncertainty()
+        if not any_uncertain(self.pair, air):
+            return {}
+        coarse = coarser(self.light)
+        names = tuple(DispersedPacket(pair=self.pair, light=coarse).numbers_si())
+
+        def numbers(pair: ArmPair, shift: dict[str, Any]) -> FloatArray:
+            found = DispersedPacket(pair=ShiftedPair.of(pair, shift), light=coarse).numbers_si()
+            return np.array([found.get(name, np.nan) for name in names])
+
+        sigmas = np.broadcast_to(total(uncertainties(numbers, self.pair, air)), (len(names),))
+        return {name: float(sigma) for name, sigma in zip(names, sigmas, strict=True) if sigma > 0}
+
+    def numbers_si(self) -> dict[str, float]:
+        """The numbers of `rows` [m or 1], as far as this light has them."""
+        found: dict[str, float] = {}
+        try:
+            found |= {"peak contrast": self.peak_height, "position": self.peak_si}
+            left, right = self._flanks
+            width = left + right
+            found |= {"width": width, "broadening": width / self.undispersed_width_si, "asymmetry": (right - left) / width}
+        except UndefinedWidthError:
+            pass  # the rows say why
+        return found if self.light.lines and self.light.density.size else found | {"centre": self.centre_si}
 
     @cached_property
     def _flanks(self) -> tuple[float, float]:
@@ -204,22 +248,20 @@ class DispersedPacket:
     @property
     def width(self) -> Measured:
         """Full width at half the greatest contrast."""
-        return Measured(value=(sum(self._flanks) * u.m).to(u.um), definition="full width of the packet at half its greatest contrast")
+        return self._measured("width", (sum(self._flanks) * u.m).to(u.um), "full width of the packet at half its greatest contrast")
 
     @property
     def broadening(self) -> Measured:
         """Width over that of the undispersed packet."""
-        return Measured(
-            value=sum(self._flanks) / self.undispersed_width_si * u.one, definition="full width at half, over that of equal arms"
-        )
+        ratio = sum(self._flanks) / self.undispersed_width_si
+        return self._measured("broadening", ratio * u.one, "full width at half contrast, over that of equal arms")
 
     @property
     def asymmetry(self) -> Measured:
         """(right - left) / (right + left) of the half widths about the greatest contrast; 0 for a symmetric packet."""
         left, right = self._flanks
-        return Measured(
-            value=(right - left) / (right + left) * u.one, definition="(right - left) / (right + left), half widths at half contrast"
-        )
+        words = "(right - left) / (right + left), half widths at half contrast"
+        return self._measured("asymmetry", (right - left) / (right + left) * u.one, words)
 
     @property
     def rows(self) -> tuple[tuple[str, Measured | str], ...]:

@@ -11,8 +11,8 @@ import numpy as np
 
 from ..errors import InputError
 from ..units import SPEED_OF_LIGHT, FloatArray, frozen_quantities, one_frequency_si
-from ._air import CONDITIONS, Air
-from .medium import Medium
+from ._air import Air
+from .medium import CONDITIONS, Medium
 
 
 @dataclass(frozen=True, kw_only=True)

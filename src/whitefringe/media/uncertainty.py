@@ -11,9 +11,9 @@ import numpy as np
 
 from ..errors import InputError
 from ..spectra import Spectrum
-from ..units import as_quantity, as_si, frozen_quantities
-from ._air import STEPS
+from ..units import as_quantity, as_si, as_temperature_si, frozen_quantities
 from .arms import ArmPair, Segment
+from .medium import STEPS
 
 LENGTH_STEP = 1e-2
 """Step [m] of the differences with a length: what is asked for is nearly linear in the lengths, and an optimum is known to 1e-9 m only."""
@@ -23,7 +23,7 @@ PARTS = {
     "temperature": "air temperature",
     "pressure": "air pressure",
     "humidity": "air humidity",
-    "segments": "segments' own",
+    "segments": "single segments' temperatures",
 }
 
 
@@ -69,17 +69,17 @@ def check_arms_and_lights(pair: Any, lights: tuple[Any, ...], air: Any) -> None:
         raise InputError(f"air must be a media.AirUncertainty; got {air!r}")
 
 
-Function = Callable[[ArmPair, dict[str, Any]], float]
-"""What is asked for, of a pair, with a shift of its air (as `ArmPair.refraction_shifted_si` takes it)."""
+Function = Callable[[ArmPair, dict[str, Any]], Any]
+"""What is asked for, a number or an array, of a pair, with a shift of its air (as `ArmPair.refraction_shifted_si` takes it)."""
 
 
-def by_air(function: Function, pair: ArmPair, key: str) -> float:
+def by_air(function: Function, pair: ArmPair, key: str) -> Any:
     """Derivative of `function` with a condition of all air, by a central difference."""
     step = STEPS[key]
     return (function(pair, {key: step}) - function(pair, {key: -step})) / (2 * step)
 
 
-def by_length(function: Function, pair: ArmPair, number: int, step: float = LENGTH_STEP) -> float:
+def by_length(function: Function, pair: ArmPair, number: int, step: float = LENGTH_STEP) -> Any:
     """Derivative of `function` with the length [m] of a segment, by its number in `ArmPair.signed`."""
     return (function(lengthened(pair, number, step), {}) - function(lengthened(pair, number, -step), {})) / (2 * step)
 
@@ -98,38 +98,77 @@ def lengthened(pair: ArmPair, number: int, by: float) -> ArmPair:
     return ArmPair(first=arms[0], second=arms[1])
 
 
-def uncertainties(function: Function, pair: ArmPair, air: AirUncertainty) -> dict[str, float]:
-    """Contributions of everything uncertain to `function`, each one standard deviation (first order), by the names of `PARTS`."""
+def any_uncertain(pair: ArmPair, air: AirUncertainty) -> bool:
+    """Tell whether anything at all is stated as uncertain."""
+    alone = (item.length_uncertainty.value > 0 or item.temperature_uncertainty.value > 0 for _, item in pair.signed)
+    return any(alone) or (pair.has_air and any(step > 0 for step in air.steps_si.values()))
+
+
+def uncertainties(function: Function, pair: ArmPair, air: AirUncertainty) -> dict[str, Any]:
+    """Contributions of everything uncertain to `function`, each one standard deviation (first order), by the names of `PARTS`.
+
+    `function` gives a number or an array of them, and so is every contribution.
+    """
     segments = [item for _, item in pair.signed]
     found = {
         "lengths": _root_sum(_lengths(function, pair, segments)),
         "segments": _root_sum(_own_temperatures(function, pair, segments)),
     }
     for key, sigma in air.steps_si.items():
-        found[key] = abs(by_air(function, pair, key)) * sigma if sigma and pair.has_air else 0.0
+        found[key] = np.abs(by_air(function, pair, key)) * sigma if sigma and pair.has_air else np.zeros(())
     return {PARTS[key]: found[key] for key in PARTS}
 
 
-def _lengths(function: Function, pair: ArmPair, segments: list[Segment]) -> Iterator[float]:
+def _lengths(function: Function, pair: ArmPair, segments: list[Segment]) -> Iterator[Any]:
     for number, item in enumerate(segments):
         sigma = float(as_si(item.length_uncertainty, u.m, "length_uncertainty"))
         if sigma:
             yield by_length(function, pair, number) * sigma
 
 
-def _own_temperatures(function: Function, pair: ArmPair, segments: list[Segment]) -> Iterator[float]:
+def _own_temperatures(function: Function, pair: ArmPair, segments: list[Segment]) -> Iterator[Any]:
     step = STEPS["temperature"]
     for number, item in enumerate(segments):
         sigma = float(as_si(item.temperature_uncertainty, u.K, "temperature_uncertainty"))
         if sigma and item.medium.is_air:
             up, down = ({"only": number, "temperature": sign * step} for sign in (1, -1))
             yield (function(pair, up) - function(pair, down)) / (2 * step) * sigma
+        elif sigma:
+            yield (function(warmed(pair, number, step), {}) - function(warmed(pair, number, -step), {})) / (2 * step) * sigma
 
 
-def _root_sum(parts: Iterator[float]) -> float:
-    return float(np.sqrt(sum(part**2 for part in parts)))
+def warmed(pair: ArmPair, number: int, by: float) -> ArmPair:
+    """Return the pair with one segment of glass warmer [K]."""
+    arms = [list(pair.first), list(pair.second)]
+    which, place = (0, number) if number < len(pair.first) else (1, number - len(pair.first))
+    item = arms[which][place]
+    now: Any = item.medium_here
+    kelvin = as_temperature_si(now.temperature if now.now is None else now.now)
+    arms[which][place] = replace(item, temperature=(kelvin + by) * u.K)
+    return ArmPair(first=arms[0], second=arms[1])
 
 
-def total(parts: dict[str, float]) -> float:
+@dataclass(frozen=True, kw_only=True)
+class ShiftedPair(ArmPair):
+    """A pair whose air is warmer, denser or moister by `shift`."""
+
+    shift: tuple[tuple[str, Any], ...] = ()
+
+    @classmethod
+    def of(cls, pair: ArmPair, shift: dict[str, Any]) -> ShiftedPair:
+        """Return the pair in the shifted air."""
+        return cls(first=pair.first, second=pair.second, shift=tuple(shift.items()))
+
+    def refraction_shifted_si(self, wavenumber: Any, only: int | None = None, **shift: float) -> Any:
+        """As of a pair, in the shifted air."""
+        given: dict[str, Any] = dict(self.shift) | shift
+        return super().refraction_shifted_si(wavenumber, **{"only": only, **given})
+
+
+def _root_sum(parts: Iterator[Any]) -> Any:
+    return np.sqrt(sum((part**2 for part in parts), start=np.zeros(())))
+
+
+def total(parts: dict[str, Any]) -> Any:
     """Root of the sum of squares."""
-    return float(np.sqrt(sum(part**2 for part in parts.values())))
+    return np.sqrt(sum((part**2 for part in parts.values()), start=np.zeros(())))

@@ -5,6 +5,9 @@ V(u, v) = int I(alpha, delta) exp(-2 pi i (u alpha + v delta) / lambda) dalpha d
 with alpha east and delta north of the phase centre [rad], and (u, v) the baseline, station 2 minus station 1, projected on the sky
 towards east and north [m] (van Cittert-Zernike theorem with the sign of OIFITS). Inside, u and v are spatial frequencies in cycles
 per radian. A negative lobe keeps its sign.
+
+A star further to the east raises w, so that at a given added path difference its fringes lie as if that were less: against added path
+difference, a packet is the degree of coherence times the conjugate of V.
 """
 
 from __future__ import annotations

@@ -160,8 +160,8 @@ def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation
     -------
     QTable
         Columns target, baseline, time (UTC), opd, its uncertainty and parts, opd_rate, opd_acceleration, u, v, w, u_icrs, v_icrs, altitude,
-        azimuth, parallactic_angle, the uncertainties of opd_rate, u, v, w and altitude, and orientation (status of the Earth
-        orientation), each with unit and description. The ``meta`` keys are short,
+        azimuth, parallactic_angle, the uncertainties of opd_rate, u, v, w and altitude, ut1_utc and its uncertainty, and orientation
+        (status of the Earth orientation), each with unit and description. The ``meta`` keys are short,
         so that FITS takes them: ORIENT (the table), LASTMEAS, AGEDAYS (days from there to the last time), N_MEAS, N_PRED, N_BEYOND,
         N_BEFORE, N_GIVEN (times by status), NOTE1, ... Stars below the horizon keep their rows, with a negative altitude and
         `above_horizon` false.
@@ -198,6 +198,9 @@ def track(array: Array, targets: Any, times: Time, orientation: EarthOrientation
     # a lamp has no altitude, and is never below the horizon
     table["above_horizon"] = ~(table["altitude"] < 0 * u.deg)
     table["above_horizon"].info.description = "false where the target has set or not yet risen"
+    for name, words in (("ut1_utc", "UT1 less UTC that was used"), ("ut1_utc_uncertainty", "one sigma of it")):
+        table[name] = getattr(result.orientation, name)[k]
+        table[name].info.description = words
     table["orientation"] = result.orientation.status[k]
     table["orientation"].info.description = "where the Earth orientation is from"
     table.meta.update(_meta(array, result))
@@ -211,7 +214,7 @@ def _readable(times: Time) -> Time:
     with warnings.catch_warnings():
         warnings.simplefilter("error", erfa.ErfaWarning)
         try:
-            _ = times.isot
+            _ = times[[int(np.argmin(times.jd1 + times.jd2)), int(np.argmax(times.jd1 + times.jd2))]].isot
         except erfa.ErfaWarning:
             times.format = "mjd"
     return times

@@ -61,7 +61,7 @@ class Observation:
     least_altitude : Quantity [angle]
         0 to 90 deg.
     sun_below : Quantity [angle]
-        Altitude of the sun between which and which the night lasts, -90 to 0 deg.
+        The night lasts while the sun's altitude is below this; -90 to 0 deg.
     step : Quantity [time]
         Longest step of the tables, 1 s to 1 h.
     orientation : EarthOrientation, optional

@@ -152,18 +152,19 @@ class Bench:
     def _through_arms(setup: Setup, light: Spectrum) -> tuple[DispersedPacket | None, BandOffset | None]:
         if setup.arms is None:
             return None, None
-        packet = DispersedPacket(pair=setup.arms, light=light)
+        packet = DispersedPacket(pair=setup.arms, light=light, air=setup.air_uncertainty)
         tracking = setup.tracking_light
-        return packet, None if tracking is None else band_offset(setup.arms, tracking, light)
+        return packet, None if tracking is None else band_offset(setup.arms, tracking, light, air=setup.air_uncertainty)
 
     def summary(self) -> str:
         """Return the state in one line, at fixed precision: stable text for notebooks under test."""
         results = self.results
         width = "none" if results.width is None else f"{results.width.to_value(u.um):.3f} um"
+        there = "there" if results.packet is None else "of equal arms there"
         verdict = "no scan" if results.reduction is None else str(results.reduction.verdict)
         text = (
             f"wavelength {results.wavelength.to_value(u.um):.4f} um, packet width {width}, "
-            f"delay {self.setup.delay.to_value(u.um):.2f} um, contrast there {abs(results.gamma):.4f}, verdict {verdict}"
+            f"delay {self.setup.delay.to_value(u.um):.2f} um, contrast {there} {abs(results.gamma):.4f}, verdict {verdict}"
         ) + _behind_arms(results)
         return f"{text}, problem: {self.problem}" if self.problem else text
 
@@ -201,18 +202,20 @@ def _behind_arms(results: BenchResults) -> str:
     if results.packet is None:
         return ""
     try:
-        text = f", dispersed contrast {results.packet.peak_contrast.value:.4f} at {results.packet.position.to_value(u.um):.2f} um"
+        text = f", dispersed contrast {results.packet.peak_height:.4f} at {1e6 * results.packet.peak_si:.2f} um"
     except UndefinedWidthError:
         text = ", no dispersed packet"
     return text if results.offset is None else f"{text}, offset from tracking {results.offset.offset.to_value(u.um):.2f} um"
 
 
 def _arms_code(setup: Setup) -> list[str]:
-    lines = [f"arms = {_code(setup.arms)}", "packet = media.DispersedPacket(pair=arms, light=light)"]
+    lines = [f"arms = {_code(setup.arms)}", f"air = {None if setup.air_uncertainty is None else _code(setup.air_uncertainty)}"]
+    lines += ["packet = media.DispersedPacket(pair=arms, light=light, air=air)"]
     if not setup.tracking:
         return lines
     filters = ", ".join(_code(item) for item in setup.tracking)
-    return [*lines, f"tracking = spectra.detected({_code(setup.source)}, {filters})", "offset = media.band_offset(arms, tracking, light)"]
+    lines += [f"tracking = spectra.detected({_code(setup.source)}, {filters})"]
+    return [*lines, "offset = media.band_offset(arms, tracking, light, air=air)"]
 
 
 def _code(shape: Any) -> str:

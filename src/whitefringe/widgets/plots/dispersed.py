@@ -110,15 +110,13 @@ class DispersedPacketPlot(BenchView):
 
 def numbers_text(packet: DispersedPacket) -> str:
     """Where zero is, and the packet's numbers from there, with fixed digits; a number that does not exist is left out."""
-    zero = packet.zero.to_value(u.um)
+    zero, found = packet.zero.to_value(u.um), packet.numbers_si()
+    place = 1e6 * found["position"] - zero if "position" in found else np.nan
     parts = [
         f"zero: {zero:.1f} µm of added path difference",
-        f"greatest contrast {packet.peak_contrast.value:.4f} at {packet.position.to_value(u.um) - zero:+.2f} µm from there",
+        f"greatest contrast {packet.peak_height:.4f} at {place:+.2f} µm from there",
     ]
     for name, words in OTHERS.items():
-        try:
-            value = getattr(packet, name).value.value
-        except WhitefringeError:
-            continue
-        parts.append(words.format(value - zero if name == "centre" else value))
+        if name in found:
+            parts.append(words.format(1e6 * found[name] - zero if name == "centre" else found[name]))
     return "; ".join(parts)
