@@ -180,6 +180,26 @@ def as_temperature_si(value: Any, name: str = "temperature") -> Any:
     return float(result) if np.ndim(result) == 0 else np.asarray(result, dtype=float)
 
 
+def number(value: Any, name: str, *, low: float, high: float = np.inf, above: bool = False) -> float:
+    """Return a number without a unit as a float: at least (or `above`) `low`, at most `high`."""
+    try:
+        found = float(u.Quantity(value).to_value(u.dimensionless_unscaled))
+    except (TypeError, ValueError):
+        raise InputError(f"{name} must be one number without a unit; got {value!r}") from None
+    if not (low < found if above else low <= found) or not found <= high or not np.isfinite(found):
+        least = f"above {low:g}" if above else f"at least {low:g}"
+        raise InputError(f"{name} must be {least}{'' if np.isinf(high) else f' and at most {high:g}'}; got {value}")
+    return found
+
+
+def whole(value: Any, name: str, *, low: int, high: int) -> int:
+    """Return a whole number between `low` and `high` as an int."""
+    found = number(value, name, low=low, high=high)
+    if found != round(found):
+        raise InputError(f"{name} must be a whole number; got {value}")
+    return round(found)
+
+
 def frozen_quantities(item: Any) -> None:
     """Replace every Quantity in the fields of a frozen dataclass by a copy that cannot be written to: the caller's may change later."""
     for field in fields(item):

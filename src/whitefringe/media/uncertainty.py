@@ -84,18 +84,22 @@ def by_length(function: Function, pair: ArmPair, number: int, step: float = LENG
     return (function(lengthened(pair, number, step), {}) - function(lengthened(pair, number, -step), {})) / (2 * step)
 
 
-def lengthened(pair: ArmPair, number: int, by: float) -> ArmPair:
-    """Return the pair with one segment longer [m]; a difference may take it below zero, which no user's segment can be."""
+def changed(pair: ArmPair, number: int, to: Segment, *others: Segment) -> ArmPair:
+    """Return the pair with one segment, by its number in `ArmPair.signed`, replaced, and `others` added to the other arm."""
     arms = [list(pair.first), list(pair.second)]
     which, place = (0, number) if number < len(pair.first) else (1, number - len(pair.first))
-    item = arms[which][place]
+    arms[which][place] = to
+    arms[1 - which] += others
+    return ArmPair(first=arms[0], second=arms[1])
+
+
+def lengthened(pair: ArmPair, number: int, by: float) -> ArmPair:
+    """Return the pair with one segment longer [m]; a difference may take it below zero, which no user's segment can be."""
+    item = [*pair.first, *pair.second][number]
     longer = item.length_si + by
     if longer < 0:  # the same path with the other sign: in the other arm
-        arms[which][place] = replace(item, length=0 * u.m)
-        arms[1 - which].append(replace(item, length=-longer * u.m))
-    else:
-        arms[which][place] = replace(item, length=longer * u.m)
-    return ArmPair(first=arms[0], second=arms[1])
+        return changed(pair, number, replace(item, length=0 * u.m), replace(item, length=-longer * u.m))
+    return changed(pair, number, replace(item, length=longer * u.m))
 
 
 def any_uncertain(pair: ArmPair, air: AirUncertainty) -> bool:
@@ -139,13 +143,10 @@ def _own_temperatures(function: Function, pair: ArmPair, segments: list[Segment]
 
 def warmed(pair: ArmPair, number: int, by: float) -> ArmPair:
     """Return the pair with one segment of glass warmer [K]."""
-    arms = [list(pair.first), list(pair.second)]
-    which, place = (0, number) if number < len(pair.first) else (1, number - len(pair.first))
-    item = arms[which][place]
-    now: Any = item.medium_here
-    kelvin = as_temperature_si(now.temperature if now.now is None else now.now)
-    arms[which][place] = replace(item, temperature=(kelvin + by) * u.K)
-    return ArmPair(first=arms[0], second=arms[1])
+    item = [*pair.first, *pair.second][number]
+    glass: Any = item.medium_here
+    kelvin = as_temperature_si(glass.temperature if glass.now is None else glass.now)
+    return changed(pair, number, replace(item, temperature=(kelvin + by) * u.K))
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -12,8 +12,7 @@ from astropy import units
 
 from ..errors import InputError
 from ..parameters import parameter
-from ..spectra._shape import number
-from ..units import FloatArray, as_si, frozen_quantities, read_only
+from ..units import FloatArray, as_si, frozen_quantities, number, read_only
 from ._object import ComplexArray, ObjectShape, SkyObject, angle_si, check_object
 from .images import Picture
 from .visibility import DarkenedDisc, GaussianDisc, Point, PowerLawDisc, Ring, UniformDisc

@@ -15,9 +15,8 @@ from scipy.special import hyp0f1, j0, roots_legendre
 
 from ..errors import InputError
 from ..parameters import parameter
-from ..spectra._shape import number
 from ..spectra.lines import FOUR_LN2
-from ..units import FloatArray, frozen_quantities
+from ..units import FloatArray, frozen_quantities, number
 from ._object import Round, angle_si
 
 

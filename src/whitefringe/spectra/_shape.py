@@ -8,7 +8,6 @@ from typing import TYPE_CHECKING, Any, Protocol, runtime_checkable
 import astropy.units as u
 import numpy as np
 
-from ..errors import InputError
 from ..units import SPEED_OF_LIGHT, FloatArray, as_frequency_si, as_quantity, as_si, is_length, one_frequency_si, positive_si
 from .lines import WIDTHS, edges_of, width_si
 
@@ -188,23 +187,3 @@ def band_edges_si(centre: Any, width: Any, reach: float = 0.5) -> tuple[float, f
         low, high = edges_of(SPEED_OF_LIGHT / centre_si, 2 * reach * positive_si(width, u.m, "width", "nm"), "width")
         return SPEED_OF_LIGHT / high, SPEED_OF_LIGHT / low
     return edges_of(centre_si, 2 * reach * positive_si(width, u.Hz, "width", "THz"), "width")
-
-
-def number(value: Any, name: str, *, low: float, high: float = np.inf, above: bool = False) -> float:
-    """Return a number without a unit as a float: at least (or `above`) `low`, at most `high`."""
-    try:
-        found = float(u.Quantity(value).to_value(u.dimensionless_unscaled))
-    except (TypeError, ValueError):
-        raise InputError(f"{name} must be one number without a unit; got {value!r}") from None
-    if not (low < found if above else low <= found) or not found <= high or not np.isfinite(found):
-        least = f"above {low:g}" if above else f"at least {low:g}"
-        raise InputError(f"{name} must be {least}{'' if np.isinf(high) else f' and at most {high:g}'}; got {value}")
-    return found
-
-
-def whole(value: Any, name: str, *, low: int, high: int) -> int:
-    """Return a whole number between `low` and `high` as an int."""
-    found = number(value, name, low=low, high=high)
-    if found != round(found):
-        raise InputError(f"{name} must be a whole number; got {value}")
-    return round(found)

@@ -9,9 +9,9 @@ from typing import ClassVar
 import numpy as np
 
 from ..errors import InputError
-from ..units import FloatArray
+from ..units import FloatArray, number
 from ._means import SquareMean
-from ._shape import Filter, FilterShape, number, within
+from ._shape import Filter, FilterShape, within
 from .effects import check_filter, check_index
 
 _NO_SPREAD = 1e-9

@@ -10,8 +10,8 @@ import astropy.units as u
 import numpy as np
 
 from ..errors import InputError
-from ..units import SPEED_OF_LIGHT, FloatArray, as_si, one_frequency_si
-from ._shape import Filter, FilterShape, number, within
+from ..units import SPEED_OF_LIGHT, FloatArray, as_si, number, one_frequency_si
+from ._shape import Filter, FilterShape, within
 
 
 def check_filter(shape: Any) -> None:

@@ -14,8 +14,7 @@ import numpy as np
 
 from ..errors import InputError
 from ..parameters import parameter
-from ..units import SPEED_OF_LIGHT, FloatArray, one_frequency_si, positive_si
-from ._shape import number, whole
+from ..units import SPEED_OF_LIGHT, FloatArray, number, one_frequency_si, positive_si, whole
 from ._source import LineSource
 from .lines import FOUR_LN2, Line, width_si
 

@@ -16,8 +16,8 @@ from scipy.special import betainc, betaincinv
 
 from ..errors import InputError
 from ..parameters import parameter
-from ..units import FloatArray, as_quantity, is_length, positive_si
-from ._shape import Peak, number, whole
+from ..units import FloatArray, as_quantity, is_length, number, positive_si, whole
+from ._shape import Peak
 from .lines import WIDTHS
 
 LEFT_OUT = 1e-6

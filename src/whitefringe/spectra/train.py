@@ -12,8 +12,8 @@ from typing import Any, ClassVar
 import numpy as np
 
 from ..errors import InputError
-from ..units import FloatArray
-from ._shape import FilterShape, whole
+from ..units import FloatArray, whole
+from ._shape import FilterShape
 from .tables import WavelengthTable
 
 EVERYWHERE = (0.0, np.inf)

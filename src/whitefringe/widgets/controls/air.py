@@ -10,11 +10,11 @@ import ipywidgets as widgets
 
 from ...media import Air, ArmPair, Mathar2007, Medium, TwoModelAir
 from ...media.mathar import mathar_windows
+from ...media.medium import CONDITIONS
 from ...parameters import Parameter, parameters_of
 from .._base import BenchView, NumberRow, guarded
 from ..bench import NO_ARMS, Bench
 
-CONDITIONS = ("temperature", "pressure", "humidity")
 STATED_UNITS = {"temperature": u.deg_C, "pressure": u.kPa, "humidity": u.percent}
 """Units in which a model's `stated` ranges are given."""
 
