@@ -3,9 +3,11 @@
 from collections.abc import Iterator
 from dataclasses import replace
 from pathlib import Path
+from typing import Any
 
 import astropy.units as u
 import ipywidgets
+import numpy as np
 import pytest
 
 from whitefringe import sky
@@ -14,6 +16,14 @@ from whitefringe.setup import Setup
 from whitefringe.widgets import Bench, BenchPanel, NightPanel
 
 BULLETIN = sky.EarthOrientation.fixed(ut1_utc=-0.092 * u.s, uncertainty=4 * u.ms)
+
+
+def night(bench: Bench) -> sky.Observation:
+    return bench.setup.observation
+
+
+def finite(mark: Any) -> Any:
+    return mark.y[np.isfinite(mark.y)]
 
 
 def living_widgets() -> int:

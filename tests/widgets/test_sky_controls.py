@@ -9,25 +9,12 @@ import pytest
 from whitefringe import sky
 from whitefringe.errors import InputError
 from whitefringe.widgets import (
-    BaselineControl,
-    DelayTrackPlot,
     NightPanel,
     ObjectControl,
     TargetControl,
-    UvPlot,
-    VisibilityPlot,
-    WindowsTable,
 )
 
-VIEWS = (BaselineControl, DelayTrackPlot, NightPanel, ObjectControl, TargetControl, UvPlot, VisibilityPlot, WindowsTable)
-
-
-def night(bench):
-    return bench.setup.observation
-
-
-def finite(mark):
-    return mark.y[np.isfinite(mark.y)]
+from .conftest import finite, night
 
 
 def test_moving_a_star_recomputes_its_rows_only(night_panel, night_bench):

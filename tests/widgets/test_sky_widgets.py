@@ -23,17 +23,9 @@ from whitefringe.widgets import (
     WindowsTable,
 )
 
-from .conftest import living_widgets
+from .conftest import finite, living_widgets, night
 
 VIEWS = (BaselineControl, DelayTrackPlot, NightPanel, ObjectControl, TargetControl, UvPlot, VisibilityPlot, WindowsTable)
-
-
-def night(bench):
-    return bench.setup.observation
-
-
-def finite(mark):
-    return mark.y[np.isfinite(mark.y)]
 
 
 def test_the_summary_says_what_is_looked_at_and_when(night_panel):
